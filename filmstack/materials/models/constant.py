@@ -1,0 +1,62 @@
+"""A medium whose index is the same at every wavelength."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from filmstack.errors import ArgumentError
+from filmstack.materials.material import Material, Provenance
+
+if TYPE_CHECKING:
+    from filmstack.arraytypes import ComplexArray, FloatArray
+
+
+class Constant(Material):
+    """N = n - ik at all wavelengths and temperatures."""
+
+    def __init__(self, n: float, k: float, provenance: Provenance, *, allow_gain: bool = False) -> None:
+        super().__init__(provenance, allow_gain=allow_gain)
+        self.n, self.k = n, k
+
+    def _index(self, wavelength_nm: FloatArray, temperature_c: float | None) -> ComplexArray:
+        return np.full(wavelength_nm.shape, complex(self.n, -self.k))
+
+    def _index_derivatives(self, wavelength_nm: FloatArray, order: int, temperature_c: float | None) -> ComplexArray:
+        rows = np.zeros((order + 1, *wavelength_nm.shape), dtype=complex)
+        rows[0] = complex(self.n, -self.k)
+        return rows
+
+
+def constant(n: float, k: float = 0.0, allow_gain: bool = False) -> Material:
+    """Return a medium of constant index.
+
+    Parameters
+    ----------
+    n, k : float
+        Refractive index and extinction coefficient, N = n - ik; k >= 0 absorbs. [1]
+    allow_gain : bool
+        Permit k < 0, a medium that amplifies.
+
+    Returns
+    -------
+    Material
+
+    Raises
+    ------
+    ArgumentError
+        If n or k is not finite, n is negative, or k is negative without `allow_gain`.
+
+    Examples
+    --------
+    >>> complex(constant(1.5).index(550.0))
+    (1.5+0j)
+    """
+    n, k = float(n), float(k)
+    if not (np.isfinite(n) and n >= 0.0):
+        raise ArgumentError(f"n: expected a finite index >= 0, got {n:g}")
+    if not np.isfinite(k) or (k < 0.0 and not allow_gain):
+        raise ArgumentError(f"k: expected a finite extinction coefficient >= 0, got {k:g}. Pass allow_gain=True for gain")
+    text = f"{n:g}" if k == 0.0 else f"{n:g} - {k:g}i" if k > 0.0 else f"{n:g} + {-k:g}i"
+    return Constant(n, k, Provenance(key=f"constant {text}", label=f"constant index {text}"), allow_gain=allow_gain)

@@ -1,0 +1,323 @@
+"""Pictures of spectra: `Spectrum` -> here -> a matplotlib figure.
+
+Three views: against wavelength, against angle, and a map over both. Quantities stand in rows of
+panels, polarizations in columns, designs and angles (or wavelengths) are lines. T may be drawn as
+optical density. Spectra hold fractions; percent is made here.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Literal, TypeAlias
+
+import numpy as np
+
+from filmstack.errors import FilmstackError
+from filmstack.report.axes import micrometres, percent_limits, wavelength_label
+from filmstack.report.style import (
+    COLOUR_MAP,
+    GREY,
+    MOST_LINES,
+    Margins,
+    head_lines,
+    label_lines,
+    line_style,
+    panel_grid,
+    quiet_style,
+)
+
+if TYPE_CHECKING:
+    from matplotlib.axes import Axes
+    from matplotlib.figure import Figure
+
+    from filmstack.analysis.spectrum import Spectrum
+    from filmstack.arraytypes import FloatArray
+
+View: TypeAlias = Literal["wavelength", "angle", "map"]
+Scale: TypeAlias = Literal["percent", "od"]
+
+QUANTITIES = {"T": "transmittance T", "R": "reflectance R", "A": "absorptance A"}
+POLARIZATIONS = {"_s": "s", "_p": "p", "": "mean of s and p"}
+LEAST_DRAWN_ABSORPTANCE = 5e-4
+"""Below this A is left out: on an axis in percent it would be a line at zero."""
+
+
+@dataclass(frozen=True)
+class Labelled:
+    """A spectrum and the name of its design."""
+
+    name: str
+    spectrum: Spectrum
+
+
+@dataclass(frozen=True)
+class Curve:
+    """One line of a panel: where it is read from, and its label."""
+
+    spectrum: Spectrum
+    row: int
+    label: str
+
+
+def spectrum_figure(
+    spectra: Sequence[Labelled],
+    *,
+    view: View = "wavelength",
+    scale: Scale = "percent",
+    polarization: str = "all",
+    conditions: str = "",
+    small_print: Sequence[str] = (),
+) -> Figure:
+    """Return a figure of the spectra of one or several designs.
+
+    Parameters
+    ----------
+    spectra : sequence of Labelled
+        What to draw; several are compared line by line.
+    view : {"wavelength", "angle", "map"}
+        The axis, or both as a map (one design).
+    scale : {"percent", "od"}
+        T in percent or as optical density.
+    polarization : {"all", "s", "p", "mean"}
+        Which are drawn.
+    conditions : str
+        Under the title: what T is, from which side the light comes.
+    small_print : sequence of str
+        At the foot: materials with their sources, notes.
+
+    Returns
+    -------
+    Figure
+
+    Raises
+    ------
+    FilmstackError
+        If there would be too many lines to tell apart, or a map of several designs or of one row.
+    """
+    suffixes = _suffixes(polarization, spectra)
+    quantities = [name for name in QUANTITIES if name != "A" or _absorbs(spectra)]
+    title = spectra[0].name if len(spectra) == 1 else f"{len(spectra)} designs compared"
+    with quiet_style():
+        if view == "map":
+            figure = _map_figure(spectra, quantities, suffixes, scale, small_print)
+        else:
+            figure = _line_figure(spectra, quantities, suffixes, view, scale, small_print)
+        head_lines(figure, title, conditions)
+    return figure
+
+
+def draw_spectrum(spectrum: Spectrum, axes: Axes | None = None) -> Axes:
+    """Draw R and T, and A when there is any, of unpolarized light against wavelength.
+
+    Parameters
+    ----------
+    spectrum : Spectrum
+        What to draw; against angle if it has one wavelength only.
+    axes : Axes, optional
+        Where to draw; a new figure if not given.
+
+    Returns
+    -------
+    Axes
+
+    Raises
+    ------
+    FilmstackError
+        If there would be too many lines to tell apart.
+    """
+    view: View = "angle" if spectrum.wavelength_nm.size == 1 and spectrum.angle_deg.size > 1 else "wavelength"
+    quantities = [name for name in "RTA" if name != "A" or _absorbs([Labelled("", spectrum)])]
+    with quiet_style():
+        if axes is None:
+            _, panels = panel_grid(1, 1, panel=(5.6, 3.2), margins=Margins(top=0.3, right=0.9))
+            axes = panels[0, 0]
+        curves = list(_curves([Labelled("", spectrum)], view))
+        _refuse_many(len(quantities) * len(curves), view)
+        labels: list[str] = []
+        for name in quantities:
+            for curve in curves:
+                x, y = _points(curve, name, "", view, "percent")
+                axes.plot(x, y, **line_style(len(labels)))
+                labels.append(f"{name} {curve.label}" if len(curves) > 1 else name)
+        axes.set_ylim(*percent_limits(np.concatenate([np.asarray(line.get_ydata()) for line in axes.get_lines()])))
+        axes.set_ylabel("R, T, A (%)" if "A" in quantities else "R, T (%)")
+        axes.set_xlabel(_x_label([spectrum], view))
+        axes.set_title(f"T {spectrum.transmittance_into}", color=GREY, size=8)
+        label_lines(axes, labels)
+    return axes
+
+
+def _line_figure(
+    spectra: Sequence[Labelled],
+    quantities: Sequence[str],
+    suffixes: Sequence[str],
+    view: View,
+    scale: Scale,
+    small_print: Sequence[str],
+) -> Figure:
+    """Panels of lines; polarizations share a panel where there is one curve, else they are columns."""
+    curves = list(_curves(spectra, view))
+    shared = len(curves) == 1 and len(suffixes) > 1
+    _refuse_many(len(curves), view)
+    labels = [POLARIZATIONS[suffix] for suffix in suffixes] if shared else [curve.label for curve in curves]
+    columns = [tuple(suffixes)] if shared else [(suffix,) for suffix in suffixes]
+    named = len(labels) > 1
+    longest = max(len(line) for label in labels for line in label.split("\n")) if named else 0
+    room = 0.25 + 0.066 * longest if named else 0.25
+    figure, panels = panel_grid(
+        len(quantities),
+        len(columns),
+        panel=(5.6 if len(columns) == 1 else 3.4, 1.75 if len(quantities) > 1 else 3.0),
+        margins=Margins(right=room, top=0.75 if len(columns) == 1 else 0.95),
+        small_print=small_print,
+    )
+    for row, name in enumerate(quantities):
+        for column, inside in enumerate(columns):
+            axes = panels[row, column]
+            for number, (curve, suffix) in enumerate((curve, suffix) for curve in curves for suffix in inside):
+                x, y = _points(curve, name, suffix, view, scale)
+                marker = {"marker": "o", "markersize": 3.0} if x.size <= 12 else {}
+                axes.plot(x, y, **line_style(number), **marker)
+            axes.margins(x=0)
+        _same_limits(panels[row], _as_od(name, scale))
+        panels[row, 0].set_ylabel(_y_label(name, scale))
+        if named:
+            label_lines(panels[row, -1], labels)
+    for column, inside in enumerate(columns):
+        panels[-1, column].set_xlabel(_x_label([item.spectrum for item in spectra], view))
+        if len(columns) > 1:
+            panels[0, column].set_title(_column_title(inside[0]))
+    return figure
+
+
+def _map_figure(
+    spectra: Sequence[Labelled],
+    quantities: Sequence[str],
+    suffixes: Sequence[str],
+    scale: Scale,
+    small_print: Sequence[str],
+) -> Figure:
+    spectrum = spectra[0].spectrum
+    if len(spectra) > 1:
+        raise FilmstackError("--view map", f"expected one design, got {len(spectra)}", "Draw one map a design")
+    if spectrum.wavelength_nm.size < 2 or spectrum.angle_deg.size < 2:
+        raise FilmstackError(
+            "--view map",
+            "expected at least two wavelengths and two angles, "
+            f"got {spectrum.wavelength_nm.size} and {spectrum.angle_deg.size}",
+            "Give --angle 0:80:1 and --wavelength START:STOP:STEP",
+        )
+    figure, panels = panel_grid(
+        len(quantities),
+        len(suffixes),
+        panel=(5.6, 2.6) if len(suffixes) == 1 else (3.3, 2.2),
+        margins=Margins(right=0.95, top=0.75 if len(suffixes) == 1 else 0.95),
+        small_print=small_print,
+    )
+    unit = 1000.0 if micrometres([spectrum]) else 1.0
+    wavelength, columns = np.unique(spectrum.wavelength_nm / unit, return_index=True)
+    angle, rows = np.unique(spectrum.angle_deg, return_index=True)
+    for row, name in enumerate(quantities):
+        values = [_values(spectrum, name, suffix, scale)[np.ix_(rows, columns)] for suffix in suffixes]
+        low, high = _limits(np.concatenate([grid.ravel() for grid in values]), _as_od(name, scale))
+        for axes, grid in zip(panels[row], values, strict=True):
+            axes.grid(visible=False)
+            image = axes.pcolormesh(
+                wavelength, angle, grid, cmap=COLOUR_MAP, vmin=low, vmax=high, shading="nearest", rasterized=True
+            )
+            axes.set_xlim(wavelength[0], wavelength[-1])
+            axes.set_ylim(angle[0], angle[-1])
+        panels[row, 0].set_ylabel("angle of incidence (deg)")
+        place = panels[row, -1].get_position()
+        width = figure.get_figwidth()
+        bar = figure.add_axes((place.x1 + 0.1 / width, place.y0, 0.12 / width, place.height))
+        figure.colorbar(image, cax=bar, label=_y_label(name, scale))
+        bar.grid(visible=False)
+    for column, suffix in enumerate(suffixes):
+        panels[-1, column].set_xlabel(wavelength_label([spectrum]))
+        if len(suffixes) > 1:
+            panels[0, column].set_title(_column_title(suffix))
+    return figure
+
+
+def _suffixes(polarization: str, spectra: Sequence[Labelled]) -> list[str]:
+    """Attribute endings to draw; at normal incidence s, p and their mean are one."""
+    if polarization != "all":
+        return ["" if polarization == "mean" else f"_{polarization}"]
+    oblique = any(np.any(item.spectrum.angle_deg > 0.0) for item in spectra)
+    return list(POLARIZATIONS) if oblique else [""]
+
+
+def _absorbs(spectra: Sequence[Labelled]) -> bool:
+    return any(float(np.max(item.spectrum.A, initial=0.0)) >= LEAST_DRAWN_ABSORPTANCE for item in spectra)
+
+
+def _curves(spectra: Sequence[Labelled], view: View) -> Iterator[Curve]:
+    for item in spectra:
+        if view == "wavelength":
+            values, texts = item.spectrum.angle_deg, [f"{angle:g}°" for angle in item.spectrum.angle_deg]
+        else:
+            values, texts = item.spectrum.wavelength_nm, [f"{value:g} nm" for value in item.spectrum.wavelength_nm]
+        for row in range(values.size):
+            parts = [item.name] * (len(spectra) > 1) + [texts[row]] * (values.size > 1 or len(spectra) == 1)
+            yield Curve(item.spectrum, row, ", ".join(parts))
+
+
+def _points(curve: Curve, name: str, suffix: str, view: View, scale: Scale) -> tuple[FloatArray, FloatArray]:
+    """Abscissa in rising order, and the values of a curve."""
+    values = _values(curve.spectrum, name, suffix, scale)
+    if view == "wavelength":
+        x = curve.spectrum.wavelength_nm / (1000.0 if micrometres([curve.spectrum]) else 1.0)
+        y = values[curve.row]
+    else:
+        x, y = curve.spectrum.angle_deg, values[:, curve.row]
+    order = np.argsort(x, kind="stable")
+    return x[order], y[order]
+
+
+def _as_od(name: str, scale: Scale) -> bool:
+    return name == "T" and scale == "od"
+
+
+def _values(spectrum: Spectrum, name: str, suffix: str, scale: Scale) -> FloatArray:
+    """Percent, or optical density of T (nan where no light passes), shape (angle, wavelength)."""
+    if not _as_od(name, scale):
+        return 100.0 * np.asarray(getattr(spectrum, name + suffix), dtype=float)
+    density = -np.asarray(getattr(spectrum, f"log10_T{suffix}"), dtype=float)
+    return np.where(np.isfinite(density), density, np.nan)
+
+
+def _limits(values: FloatArray, density: bool) -> tuple[float, float]:
+    if not density:
+        return percent_limits(values)
+    finite = values[np.isfinite(values)]
+    return 0.0, 1.05 * max(float(np.max(finite, initial=0.0)), 0.1)
+
+
+def _same_limits(panels: Sequence[Axes], density: bool) -> None:
+    values = [np.asarray(line.get_ydata(), dtype=float) for axes in panels for line in axes.get_lines()]
+    for axes in panels:
+        axes.set_ylim(*_limits(np.concatenate(values), density))
+
+
+def _y_label(name: str, scale: Scale) -> str:
+    return "optical density of T" if _as_od(name, scale) else f"{QUANTITIES[name]} (%)"
+
+
+def _x_label(spectra: Sequence[Spectrum], view: View) -> str:
+    return wavelength_label(spectra) if view == "wavelength" else "angle of incidence (deg)"
+
+
+def _column_title(suffix: str) -> str:
+    return "unpolarized (mean of s and p)" if suffix == "" else f"{POLARIZATIONS[suffix]} polarization"
+
+
+def _refuse_many(lines: int, view: View) -> None:
+    if lines > MOST_LINES:
+        other = "angles" if view == "wavelength" else "wavelengths"
+        raise FilmstackError(
+            "picture",
+            f"expected at most {MOST_LINES} lines a panel, got {lines}",
+            f"Choose fewer designs or {other}, or draw a map over wavelength and angle",
+        )

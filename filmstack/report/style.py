@@ -1,0 +1,252 @@
+"""The look that every figure shares: lines, direct labels, small print, and writing to a file.
+
+A line is told by its dashes and by a label at its end as well as by its colour, so that a figure
+can be read in grey and by people who confuse colours.
+"""
+
+from __future__ import annotations
+
+import textwrap
+from collections.abc import Iterator, Sequence
+from contextlib import contextmanager
+from dataclasses import dataclass
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+import matplotlib
+import numpy as np
+from matplotlib.figure import Figure
+
+from filmstack.files.atomic import atomic_writer
+
+if TYPE_CHECKING:
+    from matplotlib.axes import Axes
+
+    from filmstack.arraytypes import AnyArray, FloatArray
+
+INK, GREY, FAINT = "#222222", "#5a5a5a", "#e3e3e3"
+COLOUR_MAP = "cividis"  # even steps of lightness; the same to most colour-blind readers
+
+_STYLE: dict[Any, Any] = {
+    "font.family": "sans-serif",
+    "font.size": 9.0,
+    "text.color": INK,
+    "axes.labelcolor": INK,
+    "axes.edgecolor": GREY,
+    "axes.linewidth": 0.8,
+    "axes.labelsize": 9.0,
+    "axes.titlesize": 9.0,
+    "axes.titlelocation": "left",
+    "axes.spines.top": False,
+    "axes.spines.right": False,
+    "axes.grid": True,
+    "axes.axisbelow": True,
+    "axes.formatter.useoffset": False,
+    "grid.color": FAINT,
+    "grid.linewidth": 0.7,
+    "grid.linestyle": "-",
+    "xtick.color": GREY,
+    "ytick.color": GREY,
+    "xtick.labelcolor": INK,
+    "ytick.labelcolor": INK,
+    "xtick.labelsize": 8.5,
+    "ytick.labelsize": 8.5,
+    "figure.facecolor": "white",
+    "savefig.facecolor": "white",
+    "savefig.dpi": 200,
+    "svg.hashsalt": "filmstack",
+    "svg.fonttype": "path",
+    "pdf.fonttype": 42,
+}
+
+_COLOURS = ("#14304f", "#c2500d", "#1f8a8a", "#7d4a94", "#b8860b", "#6b7280", "#a02c5a", "#3f6b2f")
+_DASHES: tuple[tuple[float, ...], ...] = (
+    (),
+    (5.5, 1.8),
+    (1.6, 1.4),
+    (6.0, 1.6, 1.3, 1.6),
+    (9.0, 3.0),
+    (3.0, 1.2),
+    (6.0, 1.5, 1.3, 1.5, 1.3, 1.5),
+    (1.0, 2.6),
+)
+MOST_LINES = len(_COLOURS)
+
+
+@dataclass(frozen=True)
+class Margins:
+    """Room around the panels of a figure. [inch]"""
+
+    left: float = 0.75
+    right: float = 0.3
+    top: float = 0.75
+    bottom: float = 0.55
+    between: float = 0.35
+
+
+@contextmanager
+def quiet_style() -> Iterator[None]:
+    """Draw in the style of the house inside the `with` block."""
+    with matplotlib.rc_context(_STYLE):
+        yield
+
+
+def line_style(number: int) -> dict[str, Any]:
+    """Return colour and dashes of a figure's line.
+
+    Parameters
+    ----------
+    number : int
+        Position of the line, from 0; at most `MOST_LINES` differ.
+
+    Returns
+    -------
+    dict
+        Keywords for `Axes.plot`.
+    """
+    dashes = _DASHES[number % MOST_LINES]
+    return {"color": _COLOURS[number % MOST_LINES], "linewidth": 1.5, "linestyle": (0, dashes) if dashes else "-"}
+
+
+def panel_grid(
+    rows: int, columns: int, *, panel: tuple[float, float], margins: Margins, small_print: Sequence[str] = ()
+) -> tuple[Figure, AnyArray]:
+    """Return a figure with a grid of panels of a given size, and small print below them.
+
+    Parameters
+    ----------
+    rows, columns : int
+        Number of panels down and across.
+    panel : (float, float)
+        Width and height of a panel. [inch]
+    margins : Margins
+        Room around and between the panels.
+    small_print : sequence of str
+        Paragraphs at the foot: materials and their sources, assumptions.
+
+    Returns
+    -------
+    Figure, ndarray of Axes, shape (rows, columns)
+        The panels share the x axis of their column.
+    """
+    width = margins.left + columns * panel[0] + (columns - 1) * (margins.between + 0.25) + margins.right
+    wrapped = [
+        line for text in small_print for line in textwrap.wrap(text, int((width - 0.5) * 20.5), subsequent_indent="  ")
+    ]
+    foot = margins.bottom + (0.115 * len(wrapped) + 0.12 if wrapped else 0.0)
+    height = margins.top + rows * panel[1] + (rows - 1) * margins.between + foot
+    figure = Figure(figsize=(width, height))
+    axes = figure.subplots(
+        rows,
+        columns,
+        squeeze=False,
+        sharex="col",
+        gridspec_kw={
+            "left": margins.left / width,
+            "right": 1.0 - margins.right / width,
+            "top": 1.0 - margins.top / height,
+            "bottom": foot / height,
+            "wspace": (margins.between + 0.25) / panel[0],
+            "hspace": margins.between / panel[1],
+        },
+    )
+    figure.text(
+        0.25 / width, 0.1 / height, "\n".join(wrapped), size=6.5, color=GREY, va="bottom", ha="left", linespacing=1.25
+    )
+    return figure, np.asarray(axes)
+
+
+def head_lines(figure: Figure, title: str, subtitle: str) -> None:
+    """Write the title and one line below it at the upper left of a figure.
+
+    Parameters
+    ----------
+    figure : Figure
+        Figure with about 0.7 inch free at the top.
+    title, subtitle : str
+        What is shown, and under which conditions.
+    """
+    width, height = figure.get_size_inches()
+    figure.text(0.25 / width, 1.0 - 0.12 / height, title, size=11.5, weight="bold", va="top", ha="left")
+    figure.text(0.25 / width, 1.0 - 0.36 / height, subtitle, size=8.0, color=GREY, va="top", ha="left")
+
+
+def label_lines(axes: Axes, labels: Sequence[str], size: float = 8.0) -> None:
+    """Write the name of each line of a panel at its right end, moved apart where they would meet.
+
+    Parameters
+    ----------
+    axes : Axes
+        Panel whose lines and limits are final.
+    labels : sequence of str
+        One a line, in the order drawn.
+    size : float
+        Size of the letters. [pt]
+    """
+    figure = axes.get_figure(root=True)
+    low, high = axes.get_ylim()
+    ends = np.array([(_last_finite(line.get_ydata()) - low) / (high - low) for line in axes.get_lines()])
+    height = axes.get_position().height * (figure.get_figheight() if figure is not None else 1.0)
+    heights = np.array([1 + label.count("\n") for label in labels]) * size * 1.15 / 72.0 / height
+    places = _spread(np.clip(ends, 0.0, 1.0), heights)
+    for line, label, end, place in zip(axes.get_lines(), labels, ends, places, strict=True):
+        axes.annotate(
+            label,
+            xy=(1.0, float(np.clip(end, 0.0, 1.0))),
+            xytext=(1.035, place),
+            xycoords="axes fraction",
+            color=line.get_color(),
+            size=size,
+            va="center",
+            ha="left",
+            annotation_clip=False,
+            linespacing=1.0,
+            arrowprops={"arrowstyle": "-", "color": line.get_color(), "linewidth": 0.6, "shrinkA": 1, "shrinkB": 0},
+        )
+
+
+def save_figure(figure: Figure, path: Path) -> None:
+    """Write a figure as PNG, SVG or PDF, by the ending; the file appears whole or not at all.
+
+    Parameters
+    ----------
+    figure : Figure
+        What to write.
+    path : Path
+        Name ending in .png, .svg or .pdf.
+
+    Raises
+    ------
+    FilmstackError
+        If the file can not be written.
+    """
+    kind = path.suffix.lower().lstrip(".")
+    undated: dict[str, Any] = {"svg": {"Date": None}, "pdf": {"CreationDate": None}}.get(kind, {})
+    with quiet_style(), atomic_writer(path, "wb") as file:
+        figure.savefig(file, format=kind, metadata=undated)
+
+
+def _last_finite(values: Any) -> float:  # noqa: ANN401 - matplotlib's own
+    finite = np.asarray(values, dtype=float)
+    finite = finite[np.isfinite(finite)]
+    return float(finite[-1]) if finite.size else 0.0
+
+
+def _spread(wanted: FloatArray, heights: FloatArray) -> FloatArray:
+    """Move labels apart, each as near to its place as the others allow (pool adjacent clashes)."""
+    order = np.argsort(wanted, kind="stable")
+    blocks: list[tuple[list[int], float, float]] = []  # members, centre, height
+    for number in order:
+        block = ([int(number)], float(wanted[number]), float(heights[number]))
+        while blocks and blocks[-1][1] + blocks[-1][2] / 2 > block[1] - block[2] / 2:
+            other = blocks.pop()
+            share = len(other[0]) / (len(other[0]) + len(block[0]))
+            block = (other[0] + block[0], share * other[1] + (1 - share) * block[1], other[2] + block[2])
+        blocks.append(block)
+    places = np.empty_like(wanted)
+    for members, centre, height in blocks:
+        bottom = centre - height / 2
+        for member in members:
+            places[member] = bottom + heights[member] / 2
+            bottom += float(heights[member])
+    return places

@@ -10,4 +10,5 @@ from numpy.typing import NDArray
 FloatArray: TypeAlias = NDArray[np.float64]
 ComplexArray: TypeAlias = NDArray[np.complex128]
 IntArray: TypeAlias = NDArray[np.int64]
+BoolArray: TypeAlias = NDArray[np.bool_]
 AnyArray: TypeAlias = NDArray[Any]

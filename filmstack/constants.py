@@ -7,7 +7,7 @@ from typing import Final
 SPEED_OF_LIGHT_NM_PER_FS: Final = 299.792458
 """Speed of light in vacuum, exact. [nm/fs]"""
 
-PLANCK_EV_NM: Final = 1239.8419843320026
+PLANCK_EV_NM: Final = 1239.8419843320025
 """Photon energy times vacuum wavelength, h c / e, exact to the double. [eV nm]"""
 
 HBAR_EV_FS: Final = 0.6582119569509066

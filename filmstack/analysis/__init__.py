@@ -1,0 +1,1 @@
+"""What a stack does to light: one file a quantity."""

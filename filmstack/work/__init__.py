@@ -1,0 +1,1 @@
+"""Who does the work: blocks on a thread pool."""

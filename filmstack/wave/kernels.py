@@ -1,0 +1,444 @@
+"""The arithmetic of the engine, written once for compiled and for array work.
+
+Every function here is plain Python over numbers that may be scalars or whole arrays, with
++ - * / and comparisons on reals only. `filmstack.wave.compiled` compiles a copy in which a point
+index `i` walks over the points of a tile; `filmstack.wave.route` runs the functions as they stand,
+with TILE = 1, one point index and an array in every cell. Both do the same operations in the same
+order, so both give the same bytes. For the same reason no formula may use complex numbers,
+`abs` of a complex, fused operations or a library function that rounds in its own way.
+
+A point is one (angle, wavelength). Per point and polarization the wave is the pair (E, H) of
+tangential fields, four reals: Re E, Im H, Re H, Im E. With S = sin(delta) / kappa a layer maps
+
+    E' = cos(delta) E + i u S H,      H' = i v S E + cos(delta) H.
+
+Fields vary as exp(+i omega t). A new kernel is a function here and one name in `COMPILED`.
+"""
+
+from __future__ import annotations
+
+from typing import Any
+
+import numpy as np
+
+TILE = 1
+"""Points in a row of scratch; the compiled copy has its own constant."""
+
+# Rows of a state, each TILE long: s, then p, then what was factored out of both.
+STATE_ROWS = 12
+TURNS, DECAY, SCALE_S, SCALE_P = 8, 9, 10, 11
+
+# Rows of a lossless medium and of an absorbing or evanescent one.
+QUARTERS, INVERSE, V_S, U_P, V_P, LOSSLESS_ROWS = 0, 1, 2, 3, 4, 5
+DAMPING, INVERSE_IM, ZERO, V_S_IM, U_P_IM, V_P_IM, LOSSY_ROWS = 5, 6, 7, 8, 9, 10, 11
+
+# Rows of the end media: exit fields (s, p), incident pair (s, p), flux of T, closed exit.
+EXIT_S, EXIT_P, INCIDENT_S, INCIDENT_P, FLUX_S, FLUX_P, CLOSED, END_ROWS = 0, 4, 8, 10, 12, 13, 14, 15
+
+RESCALE_EVERY = 16
+LARGE, SMALL = 2.0**200, 2.0**-200
+POWERS_OF_HALF = 0.5 ** np.arange(1200)
+MOST_HALVINGS = 1150.0
+
+LN2_HIGH, LN2_LOW, LOG2_E = 6.93147180369123816490e-01, 1.90821492927058770002e-10, 1.4426950408889634
+
+COMPILED = (
+    "sine_cosine",
+    "exponential_minus_1",
+    "halved",
+    "rescaled",
+    "lossless_step",
+    "lossy_step",
+    "phase_lossy",
+    "lossless_layer",
+    "lossy_layer",
+    "rescale",
+    "start",
+    "powers",
+    "write_powers",
+    "write_state",
+    "run_lossless",
+    "run_lossy",
+)
+"""Functions of the compiled copy, each after those it calls."""
+
+
+def sine_cosine(x: Any) -> tuple[Any, Any, Any]:
+    """Return s, c, t with sin = (-1)^t s and cos = (-1)^t c of x quarter waves.
+
+    The reduction x - rint(x) is exact; the polynomials (least largest error on half a quarter
+    wave) are right to 1e-16. The common sign is counted, not applied: it drops out of R and T.
+    """
+    q = np.rint(x)
+    f = x - q
+    z = f * f
+    sine = f * (
+        1.5707963267948966
+        + z
+        * (
+            -0.6459640975062443
+            + z
+            * (
+                0.07969262624604301
+                + z
+                * (
+                    -0.004681754132340976
+                    + z * (0.0001604411507421909 + z * (-3.59864335298231e-06 + z * 5.633933781537854e-08))
+                )
+            )
+        )
+    )
+    cosine = 1.0 + z * (
+        -1.2337005501361697
+        + z
+        * (
+            0.2536695079010478
+            + z
+            * (
+                -0.020863480763340773
+                + z
+                * (
+                    0.0009192602745468447
+                    + z * (-2.5202039028029178e-05 + z * (4.710678405505227e-07 + z * -6.329396344967424e-09))
+                )
+            )
+        )
+    )
+    turns = np.floor(0.5 * q)
+    odd = q - 2.0 * turns
+    even = 1.0 - odd
+    return even * sine + odd * cosine, even * cosine - odd * sine, turns
+
+
+def exponential_minus_1(y: Any) -> Any:
+    """Return exp(y) - 1 for y <= 0, right to the last digits also next to 0."""
+    deep = (y < -75.0) * 1.0
+    y = (1.0 - deep) * y - 75.0 * deep
+    k = np.rint(y * LOG2_E)
+    r = (y - k * LN2_HIGH) - k * LN2_LOW
+    p = r * (
+        1.0
+        + r
+        * (
+            1.0 / 2.0
+            + r
+            * (
+                1.0 / 6.0
+                + r
+                * (
+                    1.0 / 24.0
+                    + r
+                    * (
+                        1.0 / 120.0
+                        + r
+                        * (
+                            1.0 / 720.0
+                            + r
+                            * (
+                                1.0 / 5040.0
+                                + r
+                                * (
+                                    1.0 / 40320.0
+                                    + r
+                                    * (
+                                        1.0 / 362880.0
+                                        + r
+                                        * (
+                                            1.0 / 3628800.0
+                                            + r
+                                            * (1.0 / 39916800.0 + r * (1.0 / 479001600.0 + r * (1.0 / 6227020800.0)))
+                                        )
+                                    )
+                                )
+                            )
+                        )
+                    )
+                )
+            )
+        )
+    )
+    power = np.int64((np.int64(k) + 1023) << 52).view(np.float64)
+    return power * p + (power - 1.0)
+
+
+def halved(x: Any, y: Any, halvings: Any) -> Any:
+    """Return x exp(-y) 2^-halvings for y >= 0, without a false underflow on the way."""
+    k = np.rint(y * LOG2_E)
+    r = k * LN2_HIGH - y + k * LN2_LOW
+    p = 1.0 + r * (
+        1.0
+        + r
+        * (
+            1.0 / 2.0
+            + r
+            * (
+                1.0 / 6.0
+                + r
+                * (
+                    1.0 / 24.0
+                    + r
+                    * (
+                        1.0 / 120.0
+                        + r
+                        * (
+                            1.0 / 720.0
+                            + r
+                            * (
+                                1.0 / 5040.0
+                                + r
+                                * (
+                                    1.0 / 40320.0
+                                    + r
+                                    * (
+                                        1.0 / 362880.0
+                                        + r * (1.0 / 3628800.0 + r * (1.0 / 39916800.0 + r * (1.0 / 479001600.0)))
+                                    )
+                                )
+                            )
+                        )
+                    )
+                )
+            )
+        )
+    )
+    total = k + halvings
+    up = (total < 0.0) * 1.0
+    total = total * (1.0 - 2.0 * up)
+    over = (total > 2.0 * MOST_HALVINGS) * 1.0
+    total = total * (1.0 - over) + 2.0 * MOST_HALVINGS * over
+    first = np.floor(0.5 * total)
+    a, b = POWERS_OF_HALF[np.int64(first)], POWERS_OF_HALF[np.int64(total - first)]
+    down = ((p * x) * a) * b
+    return down * (1.0 - up) + (p * x) / (a * up + (1.0 - up)) / (b * up + (1.0 - up)) * up
+
+
+def rescaled(size: Any) -> tuple[Any, Any]:
+    """Return the power of two that brings `size` back to the middle, and its exponent over 200."""
+    big, little = (size > LARGE) * 1.0, (size < SMALL) * 1.0
+    return (1.0 - big - little) + big * SMALL + little * LARGE, big - little
+
+
+def lossless_step(c: Any, us: Any, vs: Any, er: Any, hi: Any, hr: Any, ei: Any) -> tuple[Any, Any, Any, Any]:
+    """Carry (E, H) over a layer of real cos(delta), u S and v S."""
+    return c * er - us * hi, c * hi + vs * er, c * hr - vs * ei, c * ei + us * hr
+
+
+def lossy_step(
+    cr: Any, ci: Any, ur: Any, ui: Any, vr: Any, vi: Any, er: Any, hi: Any, hr: Any, ei: Any
+) -> tuple[Any, Any, Any, Any]:
+    """Carry (E, H) over a layer of complex cos(delta), u S and v S."""
+    return (
+        (cr * er - ci * ei) - (ur * hi + ui * hr),
+        (cr * hi + ci * hr) + (vr * er - vi * ei),
+        (cr * hr - ci * hi) - (vr * ei + vi * er),
+        (cr * ei + ci * er) + (ur * hr - ui * hi),
+    )
+
+
+def phase_lossy(
+    quarters: Any, damping: Any, inverse_re: Any, inverse_im: Any, zero: Any, d: Any
+) -> tuple[Any, Any, Any, Any, Any, Any]:
+    """Return Re and Im of cos(delta) and of S, both over exp|Im delta|, then the turns and 2 |Im delta|."""
+    s, c, turns = sine_cosine(quarters * d)
+    y = damping * d
+    e = exponential_minus_1(-y)
+    ch, sh = 1.0 + 0.5 * e, -0.5 * e
+    sr, si = s * ch, -(c * sh)
+    return (
+        c * ch,
+        s * sh,
+        (sr * inverse_re - si * inverse_im) + zero * d,
+        sr * inverse_im + si * inverse_re,
+        turns,
+        y,
+    )
+
+
+def lossless_layer(points: int, row: Any, d: Any, state: Any, both: bool) -> None:
+    """Carry a state over one lossless layer in which the wave propagates."""
+    for i in range(points):
+        s, c, turns = sine_cosine(row[QUARTERS * TILE + i] * d)
+        state[TURNS * TILE + i] = state[TURNS * TILE + i] + turns
+        s = s * row[INVERSE * TILE + i]
+        v = row[V_S * TILE + i] * s
+        er, hi, hr, ei = state[i], state[TILE + i], state[2 * TILE + i], state[3 * TILE + i]
+        er, hi, hr, ei = lossless_step(c, s, v, er, hi, hr, ei)
+        state[i], state[TILE + i], state[2 * TILE + i], state[3 * TILE + i] = er, hi, hr, ei
+        if both:
+            u, v = row[U_P * TILE + i] * s, row[V_P * TILE + i] * s
+            er, hi, hr, ei = state[4 * TILE + i], state[5 * TILE + i], state[6 * TILE + i], state[7 * TILE + i]
+            er, hi, hr, ei = lossless_step(c, u, v, er, hi, hr, ei)
+            state[4 * TILE + i], state[5 * TILE + i], state[6 * TILE + i], state[7 * TILE + i] = er, hi, hr, ei
+
+
+def lossy_layer(points: int, row: Any, d: Any, state: Any, both: bool) -> None:
+    """Carry a state over one layer that absorbs, amplifies or is evanescent."""
+    for i in range(points):
+        cr, ci, sr, si, turns, y = phase_lossy(
+            row[QUARTERS * TILE + i],
+            row[DAMPING * TILE + i],
+            row[INVERSE * TILE + i],
+            row[INVERSE_IM * TILE + i],
+            row[ZERO * TILE + i],
+            d,
+        )
+        state[TURNS * TILE + i] = state[TURNS * TILE + i] + turns
+        state[DECAY * TILE + i] = state[DECAY * TILE + i] + y
+        xr, xi = row[V_S * TILE + i], row[V_S_IM * TILE + i]
+        vr, vi = xr * sr - xi * si, xr * si + xi * sr
+        er, hi, hr, ei = state[i], state[TILE + i], state[2 * TILE + i], state[3 * TILE + i]
+        er, hi, hr, ei = lossy_step(cr, ci, sr, si, vr, vi, er, hi, hr, ei)
+        state[i], state[TILE + i], state[2 * TILE + i], state[3 * TILE + i] = er, hi, hr, ei
+        if both:
+            xr, xi = row[U_P * TILE + i], row[U_P_IM * TILE + i]
+            ur, ui = xr * sr - xi * si, xr * si + xi * sr
+            xr, xi = row[V_P * TILE + i], row[V_P_IM * TILE + i]
+            vr, vi = xr * sr - xi * si, xr * si + xi * sr
+            er, hi, hr, ei = state[4 * TILE + i], state[5 * TILE + i], state[6 * TILE + i], state[7 * TILE + i]
+            er, hi, hr, ei = lossy_step(cr, ci, ur, ui, vr, vi, er, hi, hr, ei)
+            state[4 * TILE + i], state[5 * TILE + i], state[6 * TILE + i], state[7 * TILE + i] = er, hi, hr, ei
+
+
+def rescale(points: int, state: Any, both: bool) -> None:
+    """Bring a state back to the middle of the range by exact powers of two, and count them."""
+    for i in range(points):
+        er, hi, hr, ei = state[i], state[TILE + i], state[2 * TILE + i], state[3 * TILE + i]
+        factor, count = rescaled(abs(er) + abs(hi) + abs(hr) + abs(ei))
+        state[i], state[TILE + i] = er * factor, hi * factor
+        state[2 * TILE + i], state[3 * TILE + i] = hr * factor, ei * factor
+        state[SCALE_S * TILE + i] = state[SCALE_S * TILE + i] + count
+        if both:
+            er, hi, hr, ei = state[4 * TILE + i], state[5 * TILE + i], state[6 * TILE + i], state[7 * TILE + i]
+            factor, count = rescaled(abs(er) + abs(hi) + abs(hr) + abs(ei))
+            state[4 * TILE + i], state[5 * TILE + i] = er * factor, hi * factor
+            state[6 * TILE + i], state[7 * TILE + i] = hr * factor, ei * factor
+            state[SCALE_P * TILE + i] = state[SCALE_P * TILE + i] + count
+
+
+def start(points: int, end: Any, state: Any) -> None:
+    """Put the fields at the exit into a state."""
+    for i in range(points):
+        for k in range(8):
+            state[k * TILE + i] = end[k * TILE + i]
+        for k in range(8, STATE_ROWS):
+            state[k * TILE + i] = 0.0
+
+
+def powers(a1: Any, a2: Any, flux: Any, closed: Any, er: Any, hi: Any, hr: Any, ei: Any, y: Any, n: Any) -> Any:
+    """Return R and T of one polarization from the fields at the first interface."""
+    dr, di = a1 * er + a2 * hr, a1 * ei + a2 * hi
+    nr, ni = a1 * er - a2 * hr, a1 * ei - a2 * hi
+    size = dr * dr + di * di
+    reflectance = (nr * nr + ni * ni) / size
+    return reflectance * (1.0 - closed) + closed, halved(flux / size, y, 400.0 * n)
+
+
+def write_powers(points: int, first: int, sample: int, end: Any, state: Any, out: Any, both: bool) -> None:
+    """Write R_s, T_s (and R_p, T_p) of a tile."""
+    for i in range(points):
+        y, closed = state[DECAY * TILE + i], end[CLOSED * TILE + i]
+        a1, a2 = end[INCIDENT_S * TILE + i], end[(INCIDENT_S + 1) * TILE + i]
+        er, hi, hr, ei = state[i], state[TILE + i], state[2 * TILE + i], state[3 * TILE + i]
+        r, t = powers(a1, a2, end[FLUX_S * TILE + i], closed, er, hi, hr, ei, y, state[SCALE_S * TILE + i])
+        out[0, sample, first + i], out[1, sample, first + i] = r, t
+        if both:
+            a1, a2 = end[INCIDENT_P * TILE + i], end[(INCIDENT_P + 1) * TILE + i]
+            er, hi, hr, ei = state[4 * TILE + i], state[5 * TILE + i], state[6 * TILE + i], state[7 * TILE + i]
+            r, t = powers(a1, a2, end[FLUX_P * TILE + i], closed, er, hi, hr, ei, y, state[SCALE_P * TILE + i])
+            out[2, sample, first + i], out[3, sample, first + i] = r, t
+
+
+def write_state(points: int, first: int, sample: int, state: Any, trace: Any) -> None:
+    """Write the whole state of a tile."""
+    for k in range(STATE_ROWS):
+        for i in range(points):
+            trace[k, sample, first + i] = state[k * TILE + i]
+
+
+def run_lossless(
+    work: Any,
+    tiles: Any,
+    order: Any,
+    thickness: Any,
+    media: Any,
+    ends: Any,
+    state: Any,
+    out: Any,
+    trace: Any,
+    both: bool,
+) -> None:
+    """Compute a block of samples for lossless layers in which the wave propagates.
+
+    Parameters
+    ----------
+    work : (int, int, int, int)
+        First and last sample, first and last tile (the last ones excluded).
+    tiles : sequence of (int, int)
+        First point of each tile and how many it has.
+    order : sequence of int, shape (layer,)
+        Row of `media` of each layer, the layer next to the incident medium first.
+    thickness : array, shape (sample, layer)
+        Thickness. [nm]
+    media, ends : array, shape (1 or sample, tile, medium, row * TILE) and (1 or sample, tile, row * TILE)
+        What `filmstack.wave.media` prepared.
+    state : array, shape (STATE_ROWS * TILE,)
+        Scratch.
+    out : array, shape (4, sample, point)
+        R_s, T_s, R_p, T_p, written where `trace` has no level.
+    trace : array, shape (level, STATE_ROWS, sample, point)
+        No level; one, the fields at the first interface; or layer + 1, those in front of each
+        layer and at the exit.
+    both : bool
+        Also p; at normal incidence p is s and need not be computed.
+    """
+    first_sample, last_sample, first_tile, last_tile = work
+    layers, levels = len(order), len(trace)
+    step_media, step_ends = min(1, len(media) - 1), min(1, len(ends) - 1)
+    for tile in range(first_tile, last_tile):
+        first, points = tiles[tile]
+        for sample in range(first_sample, last_sample):
+            end = ends[sample * step_ends, tile]
+            start(points, end, state)
+            for j in range(layers - 1, -1, -1):
+                if levels > 1:
+                    write_state(points, first, sample, state, trace[j + 1])
+                lossless_layer(points, media[sample * step_media, tile, order[j]], thickness[sample, j], state, both)
+                if (layers - j) % RESCALE_EVERY == 0:
+                    rescale(points, state, both)
+            if levels == 0:
+                write_powers(points, first, sample, end, state, out, both)
+            else:
+                write_state(points, first, sample, state, trace[0])
+
+
+def run_lossy(
+    work: Any,
+    tiles: Any,
+    order: Any,
+    thickness: Any,
+    media: Any,
+    ends: Any,
+    state: Any,
+    out: Any,
+    trace: Any,
+    both: bool,
+) -> None:
+    """Compute a block of samples for any layers; parameters as in `run_lossless`."""
+    first_sample, last_sample, first_tile, last_tile = work
+    layers, levels = len(order), len(trace)
+    step_media, step_ends = min(1, len(media) - 1), min(1, len(ends) - 1)
+    for tile in range(first_tile, last_tile):
+        first, points = tiles[tile]
+        for sample in range(first_sample, last_sample):
+            end = ends[sample * step_ends, tile]
+            start(points, end, state)
+            for j in range(layers - 1, -1, -1):
+                if levels > 1:
+                    write_state(points, first, sample, state, trace[j + 1])
+                lossy_layer(points, media[sample * step_media, tile, order[j]], thickness[sample, j], state, both)
+                if (layers - j) % RESCALE_EVERY == 0:
+                    rescale(points, state, both)
+            if levels == 0:
+                write_powers(points, first, sample, end, state, out, both)
+            else:
+                write_state(points, first, sample, state, trace[0])

@@ -1,0 +1,230 @@
+"""From refractive indices to what the kernels read: `analysis` -> here -> `filmstack.wave.route`.
+
+A medium at a point is (kappa, u, v) for s and p, kappa = sqrt((N - b)(N + b)) with Im kappa <= 0.
+All arithmetic is on reals (N = nr + i ni, ni <= 0 absorbs), so that the rounding of a value does
+not depend on its place in an array, and where b = 0 the rows of p equal those of s to the byte.
+Shapes are (sample, ...), with a first axis of 1 where all samples share a value.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from functools import cached_property
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+if TYPE_CHECKING:
+    from filmstack.arraytypes import BoolArray, ComplexArray, FloatArray, IntArray
+
+Pair = tuple["FloatArray", "FloatArray"]
+"""Real and imaginary part."""
+
+
+def times(a: Pair, b: Pair) -> Pair:
+    """Multiply two complex numbers given as pairs of reals."""
+    return a[0] * b[0] - a[1] * b[1], a[0] * b[1] + a[1] * b[0]
+
+
+def over(a: Pair, b: Pair) -> Pair:
+    """Divide two complex numbers given as pairs of reals."""
+    size = b[0] * b[0] + b[1] * b[1]
+    return (a[0] * b[0] + a[1] * b[1]) / size, (a[1] * b[0] - a[0] * b[1]) / size
+
+
+def normal_wavenumber(n: Pair, b: FloatArray) -> tuple[Pair, Pair]:
+    """Return kappa and kappa^2, the root with Im kappa <= 0; kappa is N itself where b = 0."""
+    nr, ni = n
+    x = (nr - b) * (nr + b) - ni * ni
+    y = 2.0 * nr * ni
+    size = np.sqrt(x * x + y * y)
+    larger = np.sqrt(0.5 * (np.abs(x) + size))
+    with np.errstate(divide="ignore", invalid="ignore"):
+        smaller = np.where(larger > 0.0, 0.5 * np.abs(y) / larger, 0.0)
+    re = np.where(x >= 0.0, larger, smaller)
+    im = -np.where(x >= 0.0, smaller, larger)
+    re = np.where(y > 0.0, -re, re)
+    straight = b == 0.0
+    return (np.where(straight, nr, re), np.where(straight, ni, im)), (x, y)
+
+
+@dataclass(frozen=True)
+class Media:
+    """The films of a coherent group at a set of points, ready for the kernels.
+
+    Parameters
+    ----------
+    n : pair of ndarray, shape (sample or 1, medium, point)
+        Refractive index N = nr + i ni of each distinct film medium. [1]
+    b : ndarray, shape (sample or 1, point)
+        Transverse index N0 sin(theta0). [1]
+    k0 : ndarray, shape (point,)
+        Vacuum wavenumber 2 pi / lambda. [1/nm]
+    """
+
+    n: Pair
+    b: FloatArray
+    k0: FloatArray
+
+    @cached_property
+    def _wavenumber(self) -> tuple[Pair, Pair]:
+        return normal_wavenumber(self.n, self.b[:, np.newaxis, :])
+
+    @property
+    def kappa(self) -> Pair:
+        """Normal wavenumber over k0, shape (sample or 1, medium, point). [1]"""
+        return self._wavenumber[0]
+
+    @property
+    def v_s(self) -> Pair:
+        """kappa^2, exact next to the critical angle."""
+        return self._wavenumber[1]
+
+    @cached_property
+    def v_p(self) -> Pair:
+        """N^2, equal to v_s where b = 0."""
+        nr, ni = self.n
+        return nr * nr - ni * ni, 2.0 * nr * ni
+
+    @cached_property
+    def u_p(self) -> Pair:
+        """kappa^2 / N^2, 1 where b = 0; 0 where N = 0, which the caller treats apart."""
+        with np.errstate(divide="ignore", invalid="ignore"):
+            re, im = over(self.v_s, self.v_p)
+        straight = self.b[:, np.newaxis, :] == 0.0
+        none = (self.v_p[0] == 0.0) & (self.v_p[1] == 0.0)
+        re = np.where(straight, 1.0, np.where(none, 0.0, re))
+        return re, np.where(straight | none, 0.0, im)
+
+    @cached_property
+    def lossless(self) -> BoolArray:
+        """Points at which every medium is lossless, shape (point,)."""
+        return np.asarray(np.all(self.n[1] == 0.0, axis=(0, 1)))
+
+    @cached_property
+    def simple(self) -> BoolArray:
+        """Points at which every medium is lossless and carries a propagating wave, shape (point,)."""
+        return self.lossless & np.asarray(np.all((self.kappa[1] == 0.0) & (self.kappa[0] > 0.0), axis=(0, 1)))
+
+    def rows(self, simple: bool, chosen: IntArray) -> FloatArray:
+        """Return the kernels' rows at the chosen points, shape (sample or 1, medium, row, point)."""
+
+        def pick(values: FloatArray) -> FloatArray:
+            return values[..., chosen]
+
+        kr, ki = pick(self.kappa[0]), pick(self.kappa[1])
+        k0 = self.k0[chosen]
+        quarters = (2.0 / np.pi) * kr * k0
+        zero = (kr == 0.0) & (ki == 0.0)
+        with np.errstate(divide="ignore", invalid="ignore"):
+            size = kr * kr + ki * ki
+            real = ki == 0.0
+            inverse_re = np.where(zero, 0.0, np.where(real, 1.0 / kr, kr / size))
+            inverse_im = np.where(real, 0.0, -ki / size)
+        v_s, u_p, v_p = self.v_s, self.u_p, self.v_p
+        rows = [quarters, inverse_re, pick(v_s[0]), pick(u_p[0]), pick(v_p[0])]
+        if not simple:
+            rows += [-2.0 * k0 * ki, inverse_im, np.where(zero, k0, 0.0), pick(v_s[1]), pick(u_p[1]), pick(v_p[1])]
+        return np.stack([np.broadcast_to(row, kr.shape) for row in rows], axis=2)
+
+
+@dataclass(frozen=True)
+class Ends:
+    """The incident and exit medium of a coherent group at a set of points.
+
+    Parameters
+    ----------
+    incident, exit : pair of ndarray, shape (sample or 1, point)
+        Refractive index N = nr + i ni. [1]
+    b : ndarray, shape (sample or 1, point)
+        Transverse index. [1]
+    cosine : ndarray, shape (sample or 1, point), or None
+        Cosine of the angle of incidence, where the incident medium is the outer, lossless one;
+        None for a plate as incident medium, whose normal wavenumber is computed.
+    """
+
+    incident: Pair
+    exit: Pair
+    b: FloatArray
+    cosine: FloatArray | None = None
+    blocked: bool = False
+    """p ends at a film of N = 0: there H = 0, whatever stands behind."""
+
+    @cached_property
+    def exit_kappa(self) -> Pair:
+        """Normal wavenumber of the exit medium over k0."""
+        return normal_wavenumber(self.exit, self.b)[0]
+
+    def exit_fields(self, p: bool) -> tuple[Pair, Pair]:
+        """Return E and H at the exit: s (1, kappa), p (kappa, N^2), never a division by what can be 0."""
+        kr, ki = self.exit_kappa
+        one, nothing = np.ones_like(kr), np.zeros_like(kr)
+        if not p:
+            return (one, nothing), (kr, ki)
+        if self.blocked:
+            return (one, nothing), (nothing, nothing)
+        nr, ni = self.exit
+        straight = self.b == 0.0
+        return (
+            (np.where(straight, one, kr), np.where(straight, nothing, ki)),
+            (np.where(straight, kr, nr * nr - ni * ni), np.where(straight, ki, 2.0 * nr * ni)),
+        )
+
+    def incident_pair(self, p: bool) -> tuple[Pair, Pair]:
+        """Return (a1, a2) such that a1 E + a2 H is the wave towards the stack, a1 E - a2 H the one back."""
+        nr, ni = np.broadcast_arrays(*self.incident)
+        if self.cosine is not None:
+            nothing = np.zeros(np.broadcast_shapes(self.b.shape, nr.shape))
+            straight = self.b == 0.0
+            if not p:
+                return (nr * self.cosine + nothing, nothing), (1.0 + nothing, nothing)
+            return (nr + nothing, nothing), (np.where(straight, 1.0, self.cosine) + nothing, nothing)
+        kappa, _ = normal_wavenumber(self.incident, self.b)
+        one = (np.ones_like(kappa[0]), np.zeros_like(kappa[0]))
+        if not p:
+            return kappa, one
+        straight = self.b == 0.0
+        square = (nr * nr - ni * ni, 2.0 * nr * ni)
+        return (
+            (np.where(straight, nr, square[0]), np.where(straight, ni, square[1])),
+            (np.where(straight, 1.0, kappa[0]), np.where(straight, 0.0, kappa[1])),
+        )
+
+    def flux(self, p: bool) -> FloatArray:
+        """Return T |D|^2: four times the incident pair's product times the exit's Re(E conj H)."""
+        (er, ei), (hr, hi) = self.exit_fields(p)
+        (ar, _), (cr, _) = self.incident_pair(p)
+        return 4.0 * (ar * cr) * (er * hr + ei * hi)
+
+    def amplitude(self, p: bool) -> Pair:
+        """Return t D, the full electric-field ratio of the wave that leaves: s 2 a1 a2, p 2 a1 a2 N_exit."""
+        (ar, _), (cr, _) = self.incident_pair(p)
+        double = 2.0 * (ar * cr)
+        if not p:
+            return double, np.zeros_like(double)
+        straight = self.b == 0.0
+        nr, ni = self.exit
+        return double * np.where(straight, 1.0, nr), double * np.where(straight, 0.0, ni)
+
+    def rows(self, lossless_films: BoolArray, chosen: IntArray) -> FloatArray:
+        """Return the kernels' end rows at the chosen points, shape (sample or 1, row, point)."""
+        rows: list[FloatArray] = []
+        for p in (False, True):
+            (er, ei), (hr, hi) = self.exit_fields(p)
+            rows += [er, hi, hr, ei]
+        for p in (False, True):
+            (ar, _), (cr, _) = self.incident_pair(p)
+            rows += [ar, cr]
+        flux = [self.flux(p) for p in (False, True)]
+        closed = (flux[0] == 0.0) & (flux[1] == 0.0) & lossless_films
+        if self.cosine is not None:
+            closed = closed | (self.cosine == 0.0)
+        rows_closed = closed.astype(float)
+        rows += [*flux, rows_closed]
+        shape = np.broadcast_shapes(*(row.shape for row in rows))
+        return np.stack([np.broadcast_to(row, shape)[:, chosen] for row in rows], axis=1)
+
+
+def complex_pair(values: ComplexArray) -> Pair:
+    """Split complex values into contiguous real and imaginary parts."""
+    return np.ascontiguousarray(values.real), np.ascontiguousarray(values.imag)

@@ -13,6 +13,7 @@ if TYPE_CHECKING:
     from filmstack.arraytypes import FloatArray
 
 _INFRARED_NM = 2500.0
+_NEAR_ALL = 70.0  # percent; above it an axis need not start at zero
 
 
 def micrometres(spectra: Sequence[Spectrum]) -> bool:
@@ -26,7 +27,7 @@ def wavelength_label(spectra: Sequence[Spectrum]) -> str:
 
 
 def percent_limits(values: FloatArray) -> tuple[float, float]:
-    """Return the limits of an axis in percent: from zero, unless all values lie close together far above.
+    """Return the limits of an axis in percent: from zero, unless all values are near 100.
 
     Parameters
     ----------
@@ -41,11 +42,11 @@ def percent_limits(values: FloatArray) -> tuple[float, float]:
     Examples
     --------
     >>> percent_limits(np.array([0.2, 1.3]))
-    (0.0, 1.4)
+    (-0.028, 1.4)
     """
     finite = values[np.isfinite(values)]
     low, high = float(np.min(finite, initial=100.0)), float(np.max(finite, initial=0.0))
-    if low <= 0.6 * high or high <= 0.0:
+    if low < _NEAR_ALL or high <= 0.0:
         low = 0.0
     if high - low < 1e-3 * max(high, 1e-6):  # a flat line
         low, high = 0.0, 1.25 * max(high, 0.8)
@@ -54,4 +55,4 @@ def percent_limits(values: FloatArray) -> tuple[float, float]:
     if top > 100.0 >= high:
         top = 100.0
     room = 0.02 * (top - bottom)
-    return (bottom - (room if bottom > 0.0 else 0.0)), top + (room if top - high < room else 0.0)
+    return bottom - room, top + (room if top - high < room else 0.0)

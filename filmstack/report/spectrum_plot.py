@@ -12,16 +12,19 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Literal, TypeAlias
 
 import numpy as np
+from matplotlib.patheffects import Normal, Stroke
 
 from filmstack.errors import FilmstackError
 from filmstack.report.axes import micrometres, percent_limits, wavelength_label
 from filmstack.report.style import (
     COLOUR_MAP,
     GREY,
+    INK,
     MOST_LINES,
     Margins,
     head_lines,
     label_lines,
+    label_room,
     line_style,
     panel_grid,
     quiet_style,
@@ -29,6 +32,7 @@ from filmstack.report.style import (
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
+    from matplotlib.collections import QuadMesh
     from matplotlib.figure import Figure
 
     from filmstack.analysis.spectrum import Spectrum
@@ -39,6 +43,8 @@ Scale: TypeAlias = Literal["percent", "od"]
 
 QUANTITIES = {"T": "transmittance T", "R": "reflectance R", "A": "absorptance A"}
 POLARIZATIONS = {"_s": "s", "_p": "p", "": "mean of s and p"}
+_ROUND_PERCENT = (0.1, 0.2, 0.5, 1, 2, 5, 10, 20, 50, 80, 90, 95, 98, 99, 99.5, 99.9)
+_ROUND_DENSITIES = (0.5, 1, 2, 3, 4, 5, 6, 8, 10, 15, 20)
 LEAST_DRAWN_ABSORPTANCE = 5e-4
 """Below this A is left out: on an axis in percent it would be a line at zero."""
 
@@ -130,7 +136,7 @@ def draw_spectrum(spectrum: Spectrum, axes: Axes | None = None) -> Axes:
     quantities = [name for name in "RTA" if name != "A" or _absorbs([Labelled("", spectrum)])]
     with quiet_style():
         if axes is None:
-            _, panels = panel_grid(1, 1, panel=(5.6, 3.2), margins=Margins(top=0.3, right=0.9))
+            _, panels = panel_grid(1, 1, panel=(5.6, 3.2), margins=Margins(top=0.3, right=1.1))
             axes = panels[0, 0]
         curves = list(_curves([Labelled("", spectrum)], view))
         _refuse_many(len(quantities) * len(curves), view)
@@ -141,6 +147,7 @@ def draw_spectrum(spectrum: Spectrum, axes: Axes | None = None) -> Axes:
                 axes.plot(x, y, **line_style(len(labels)))
                 labels.append(f"{name} {curve.label}" if len(curves) > 1 else name)
         axes.set_ylim(*percent_limits(np.concatenate([np.asarray(line.get_ydata()) for line in axes.get_lines()])))
+        axes.margins(x=0)
         axes.set_ylabel("R, T, A (%)" if "A" in quantities else "R, T (%)")
         axes.set_xlabel(_x_label([spectrum], view))
         axes.set_title(f"T {spectrum.transmittance_into}", color=GREY, size=8)
@@ -156,38 +163,38 @@ def _line_figure(
     scale: Scale,
     small_print: Sequence[str],
 ) -> Figure:
-    """Panels of lines; polarizations share a panel where there is one curve, else they are columns."""
+    """One column of panels, or a row a polarization where several curves leave no room for both."""
     curves = list(_curves(spectra, view))
-    shared = len(curves) == 1 and len(suffixes) > 1
     _refuse_many(len(curves), view)
-    labels = [POLARIZATIONS[suffix] for suffix in suffixes] if shared else [curve.label for curve in curves]
-    columns = [tuple(suffixes)] if shared else [(suffix,) for suffix in suffixes]
-    named = len(labels) > 1
-    longest = max(len(line) for label in labels for line in label.split("\n")) if named else 0
-    room = 0.25 + 0.066 * longest if named else 0.25
+    table = len(curves) > 1 and len(suffixes) > 1
+    lines = [(curve, suffix) for curve in curves for suffix in ([""] if table else suffixes)]
+    labels = [curve.label for curve in curves] if len(curves) > 1 else [POLARIZATIONS[suffix] for suffix in suffixes]
+    room = label_room(labels)
     figure, panels = panel_grid(
-        len(quantities),
-        len(columns),
-        panel=(5.6 if len(columns) == 1 else 3.4, 1.75 if len(quantities) > 1 else 3.0),
-        margins=Margins(right=room, top=0.75 if len(columns) == 1 else 0.95),
+        len(suffixes) if table else len(quantities),
+        len(quantities) if table else 1,
+        panel=(2.9, 1.7) if table else (5.6, 1.75 if len(quantities) > 1 else 3.0),
+        margins=Margins(right=room, top=0.95 if table else 0.78, across=0.55 + room),
         small_print=small_print,
     )
-    for row, name in enumerate(quantities):
-        for column, inside in enumerate(columns):
-            axes = panels[row, column]
-            for number, (curve, suffix) in enumerate((curve, suffix) for curve in curves for suffix in inside):
-                x, y = _points(curve, name, suffix, view, scale)
+    for row, suffix in enumerate(suffixes if table else [""]):
+        for place, name in enumerate(quantities):
+            axes = panels[row, place] if table else panels[place, 0]
+            for number, (curve, own) in enumerate(lines):
+                x, y = _points(curve, name, suffix + own, view, scale)
                 marker = {"marker": "o", "markersize": 3.0} if x.size <= 12 else {}
                 axes.plot(x, y, **line_style(number), **marker)
             axes.margins(x=0)
-        _same_limits(panels[row], _as_od(name, scale))
-        panels[row, 0].set_ylabel(_y_label(name, scale))
-        if named:
-            label_lines(panels[row, -1], labels)
-    for column, inside in enumerate(columns):
-        panels[-1, column].set_xlabel(_x_label([item.spectrum for item in spectra], view))
-        if len(columns) > 1:
-            panels[0, column].set_title(_column_title(inside[0]))
+            axes.set_ylabel(_y_label(name, scale))
+            if table:
+                axes.set_title(_polarization_title(suffix), size=8, color=GREY)
+    for place, name in enumerate(quantities):
+        _same_limits(list(panels[:, place]) if table else [panels[place, 0]], _as_od(name, scale))
+    for axes in panels.flat:
+        if len(labels) > 1:
+            label_lines(axes, labels)
+    for axes in panels[-1]:
+        axes.set_xlabel(_x_label([item.spectrum for item in spectra], view))
     return figure
 
 
@@ -198,47 +205,85 @@ def _map_figure(
     scale: Scale,
     small_print: Sequence[str],
 ) -> Figure:
+    """A row of maps a polarization, a column a quantity, its scale of colours on top."""
     spectrum = spectra[0].spectrum
-    if len(spectra) > 1:
-        raise FilmstackError("--view map", f"expected one design, got {len(spectra)}", "Draw one map a design")
-    if spectrum.wavelength_nm.size < 2 or spectrum.angle_deg.size < 2:
-        raise FilmstackError(
-            "--view map",
-            "expected at least two wavelengths and two angles, "
-            f"got {spectrum.wavelength_nm.size} and {spectrum.angle_deg.size}",
-            "Give --angle 0:80:1 and --wavelength START:STOP:STEP",
-        )
+    _refuse_map(spectra)
     figure, panels = panel_grid(
-        len(quantities),
         len(suffixes),
-        panel=(5.6, 2.6) if len(suffixes) == 1 else (3.3, 2.2),
-        margins=Margins(right=0.95, top=0.75 if len(suffixes) == 1 else 0.95),
+        len(quantities),
+        panel=(3.1, 2.0 if len(suffixes) > 1 else 2.6),
+        margins=Margins(top=1.55),
         small_print=small_print,
     )
     unit = 1000.0 if micrometres([spectrum]) else 1.0
     wavelength, columns = np.unique(spectrum.wavelength_nm / unit, return_index=True)
     angle, rows = np.unique(spectrum.angle_deg, return_index=True)
-    for row, name in enumerate(quantities):
-        values = [_values(spectrum, name, suffix, scale)[np.ix_(rows, columns)] for suffix in suffixes]
-        low, high = _limits(np.concatenate([grid.ravel() for grid in values]), _as_od(name, scale))
-        for axes, grid in zip(panels[row], values, strict=True):
+    for column, name in enumerate(quantities):
+        grids = [_values(spectrum, name, suffix, scale)[np.ix_(rows, columns)] for suffix in suffixes]
+        low, high = _limits(np.concatenate([grid.ravel() for grid in grids]), _as_od(name, scale))
+        levels = _round_levels(grids, _as_od(name, scale))
+        for axes, grid, suffix in zip(panels[:, column], grids, suffixes, strict=True):
             axes.grid(visible=False)
             image = axes.pcolormesh(
-                wavelength, angle, grid, cmap=COLOUR_MAP, vmin=low, vmax=high, shading="nearest", rasterized=True
+                wavelength,
+                angle,
+                grid,
+                cmap=COLOUR_MAP,
+                vmin=max(low, 0.0),
+                vmax=high if _as_od(name, scale) else min(high, 100.0),
+                shading="nearest",
+                rasterized=True,
             )
+            _contours(axes, wavelength, angle, grid, levels)
             axes.set_xlim(wavelength[0], wavelength[-1])
             axes.set_ylim(angle[0], angle[-1])
-        panels[row, 0].set_ylabel("angle of incidence (deg)")
-        place = panels[row, -1].get_position()
-        width = figure.get_figwidth()
-        bar = figure.add_axes((place.x1 + 0.1 / width, place.y0, 0.12 / width, place.height))
-        figure.colorbar(image, cax=bar, label=_y_label(name, scale))
-        bar.grid(visible=False)
-    for column, suffix in enumerate(suffixes):
+            axes.set_title(_polarization_title(suffix), size=8, color=GREY)
         panels[-1, column].set_xlabel(wavelength_label([spectrum]))
-        if len(suffixes) > 1:
-            panels[0, column].set_title(_column_title(suffix))
+        _scale_of_colours(figure, panels[0, column], image, _y_label(name, scale))
+    for axes in panels[:, 0]:
+        axes.set_ylabel("angle of incidence (deg)")
     return figure
+
+
+def _round_levels(grids: Sequence[FloatArray], density: bool) -> FloatArray:
+    """A few round values that lie among the values drawn, for lines on a map."""
+    values = np.concatenate([grid[np.isfinite(grid)] for grid in grids])
+    if values.size == 0:
+        return np.empty(0)
+    steps = np.array(_ROUND_DENSITIES if density else _ROUND_PERCENT)
+    wanted = np.quantile(values, (0.15, 0.4, 0.65, 0.88))
+    return np.unique(steps[np.argmin(np.abs(steps[:, np.newaxis] - wanted), axis=0)])
+
+
+def _contours(axes: Axes, wavelength: FloatArray, angle: FloatArray, grid: FloatArray, levels: FloatArray) -> None:
+    """Lines of round value, so that a map can be read without its colours."""
+    finite = grid[np.isfinite(grid)]
+    inside = levels[(levels > np.min(finite, initial=np.inf)) & (levels < np.max(finite, initial=-np.inf))]
+    if inside.size == 0:
+        return
+    lines = axes.contour(wavelength, angle, grid, levels=inside, colors="white", linewidths=0.7)
+    for text in axes.clabel(lines, fmt="%g", fontsize=6.5):
+        text.set_path_effects([Stroke(linewidth=1.5, foreground=INK), Normal()])
+    lines.set_path_effects([Stroke(linewidth=1.3, foreground=INK), Normal()])
+
+
+def _scale_of_colours(figure: Figure, below: Axes, image: QuadMesh, label: str) -> None:
+    place, height = below.get_position(), figure.get_figheight()
+    axes = figure.add_axes((place.x0, place.y1 + 0.3 / height, place.width, 0.1 / height))
+    figure.colorbar(image, cax=axes, orientation="horizontal", ticklocation="top", label=label)
+    axes.grid(visible=False)
+
+
+def _refuse_map(spectra: Sequence[Labelled]) -> None:
+    wavelengths, angles = spectra[0].spectrum.wavelength_nm.size, spectra[0].spectrum.angle_deg.size
+    if len(spectra) > 1:
+        raise FilmstackError("--view map", f"expected one design, got {len(spectra)}", "Draw one map a design")
+    if wavelengths < 2 or angles < 2:
+        raise FilmstackError(
+            "--view map",
+            f"expected at least two wavelengths and two angles, got {wavelengths} and {angles}",
+            "Give --angle 0:80:1 and --wavelength START:STOP:STEP",
+        )
 
 
 def _suffixes(polarization: str, spectra: Sequence[Labelled]) -> list[str]:
@@ -309,7 +354,7 @@ def _x_label(spectra: Sequence[Spectrum], view: View) -> str:
     return wavelength_label(spectra) if view == "wavelength" else "angle of incidence (deg)"
 
 
-def _column_title(suffix: str) -> str:
+def _polarization_title(suffix: str) -> str:
     return "unpolarized (mean of s and p)" if suffix == "" else f"{POLARIZATIONS[suffix]} polarization"
 
 

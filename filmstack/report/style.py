@@ -16,6 +16,7 @@ from typing import TYPE_CHECKING, Any
 import matplotlib
 import numpy as np
 from matplotlib.figure import Figure
+from matplotlib.lines import Line2D
 
 from filmstack.files.atomic import atomic_writer
 
@@ -75,13 +76,14 @@ MOST_LINES = len(_COLOURS)
 
 @dataclass(frozen=True)
 class Margins:
-    """Room around the panels of a figure. [inch]"""
+    """Room around the panels of a figure, and between them down and across. [inch]"""
 
     left: float = 0.75
     right: float = 0.3
     top: float = 0.75
     bottom: float = 0.55
-    between: float = 0.35
+    down: float = 0.35
+    across: float = 0.6
 
 
 @contextmanager
@@ -129,12 +131,12 @@ def panel_grid(
     Figure, ndarray of Axes, shape (rows, columns)
         The panels share the x axis of their column.
     """
-    width = margins.left + columns * panel[0] + (columns - 1) * (margins.between + 0.25) + margins.right
+    width = margins.left + columns * panel[0] + (columns - 1) * margins.across + margins.right
     wrapped = [
         line for text in small_print for line in textwrap.wrap(text, int((width - 0.5) * 20.5), subsequent_indent="  ")
     ]
     foot = margins.bottom + (0.115 * len(wrapped) + 0.12 if wrapped else 0.0)
-    height = margins.top + rows * panel[1] + (rows - 1) * margins.between + foot
+    height = margins.top + rows * panel[1] + (rows - 1) * margins.down + foot
     figure = Figure(figsize=(width, height))
     axes = figure.subplots(
         rows,
@@ -146,8 +148,8 @@ def panel_grid(
             "right": 1.0 - margins.right / width,
             "top": 1.0 - margins.top / height,
             "bottom": foot / height,
-            "wspace": (margins.between + 0.25) / panel[0],
-            "hspace": margins.between / panel[1],
+            "wspace": margins.across / panel[0],
+            "hspace": margins.down / panel[1],
         },
     )
     figure.text(
@@ -167,12 +169,26 @@ def head_lines(figure: Figure, title: str, subtitle: str) -> None:
         What is shown, and under which conditions.
     """
     width, height = figure.get_size_inches()
-    figure.text(0.25 / width, 1.0 - 0.12 / height, title, size=11.5, weight="bold", va="top", ha="left")
-    figure.text(0.25 / width, 1.0 - 0.36 / height, subtitle, size=8.0, color=GREY, va="top", ha="left")
+    room = width - 0.45
+    size = min(11.5, 11.5 * room / max(0.098 * len(title), 1e-3))
+    text = textwrap.fill(subtitle, int(room * 16.5))
+    figure.text(0.25 / width, 1.0 - 0.12 / height, title, size=size, weight="bold", va="top", ha="left")
+    figure.text(0.25 / width, 1.0 - 0.35 / height, text, size=8.0, color=GREY, va="top", ha="left", linespacing=1.1)
 
 
-def label_lines(axes: Axes, labels: Sequence[str], size: float = 8.0) -> None:
-    """Write the name of each line of a panel at its right end, moved apart where they would meet.
+def label_room(labels: Sequence[str]) -> float:
+    """Return the room that `label_lines` needs to the right of a panel. [inch]
+
+    Parameters
+    ----------
+    labels : sequence of str
+        Labels of the panel; fewer than two need none.
+    """
+    return 0.25 + (0.4 + 0.062 * max(map(len, labels)) if len(labels) > 1 else 0.0)
+
+
+def label_lines(axes: Axes, labels: Sequence[str]) -> None:
+    """Write the name of each line of a panel at its right end, with a sample of its dashes.
 
     Parameters
     ----------
@@ -180,29 +196,26 @@ def label_lines(axes: Axes, labels: Sequence[str], size: float = 8.0) -> None:
         Panel whose lines and limits are final.
     labels : sequence of str
         One a line, in the order drawn.
-    size : float
-        Size of the letters. [pt]
     """
     figure = axes.get_figure(root=True)
+    place = axes.get_position()
+    width, height = (figure.get_size_inches() if figure is not None else np.ones(2)) * (place.width, place.height)
     low, high = axes.get_ylim()
-    ends = np.array([(_last_finite(line.get_ydata()) - low) / (high - low) for line in axes.get_lines()])
-    height = axes.get_position().height * (figure.get_figheight() if figure is not None else 1.0)
-    heights = np.array([1 + label.count("\n") for label in labels]) * size * 1.15 / 72.0 / height
-    places = _spread(np.clip(ends, 0.0, 1.0), heights)
-    for line, label, end, place in zip(axes.get_lines(), labels, ends, places, strict=True):
-        axes.annotate(
-            label,
-            xy=(1.0, float(np.clip(end, 0.0, 1.0))),
-            xytext=(1.035, place),
-            xycoords="axes fraction",
-            color=line.get_color(),
-            size=size,
-            va="center",
-            ha="left",
-            annotation_clip=False,
-            linespacing=1.0,
-            arrowprops={"arrowstyle": "-", "color": line.get_color(), "linewidth": 0.6, "shrinkA": 1, "shrinkB": 0},
-        )
+    lines = axes.get_lines()
+    ends = np.clip([(_last_finite(line.get_ydata()) - low) / (high - low) for line in lines], 0.0, 1.0)
+    places = _spread(ends, np.full(len(labels), 8.0 * 1.2 / 72.0 / height))
+    start, stop = 1.0 + 0.12 / width, 1.0 + 0.4 / width
+    fixed: dict[str, Any] = {"transform": axes.transAxes, "clip_on": False}
+    for line, label, end, level in zip(lines, labels, ends, places, strict=True):
+        look: dict[str, Any] = {"color": line.get_color()}
+        axes.add_artist(Line2D([1.0, start], [end, level], linewidth=0.5, **look, **fixed))
+        sample = Line2D([start, stop], [level, level])
+        sample.update_from(line)
+        sample.set_marker("")
+        sample.set_transform(axes.transAxes)
+        sample.set_clip_on(False)
+        axes.add_artist(sample)
+        axes.text(stop + 0.05 / width, level, label, size=8.0, va="center", ha="left", **look, **fixed)
 
 
 def save_figure(figure: Figure, path: Path) -> None:

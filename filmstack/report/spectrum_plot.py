@@ -299,13 +299,14 @@ def _absorbs(spectra: Sequence[Labelled]) -> bool:
 
 
 def _curves(spectra: Sequence[Labelled], view: View) -> Iterator[Curve]:
-    for item in spectra:
-        if view == "wavelength":
-            values, texts = item.spectrum.angle_deg, [f"{angle:g}°" for angle in item.spectrum.angle_deg]
-        else:
-            values, texts = item.spectrum.wavelength_nm, [f"{value:g} nm" for value in item.spectrum.wavelength_nm]
-        for row in range(values.size):
-            parts = [item.name] * (len(spectra) > 1) + [texts[row]] * (values.size > 1 or len(spectra) == 1)
+    """Lines of a panel; a label tells the design and the angle (or wavelength) unless all share them."""
+    by_wavelength = view == "wavelength"
+    axes = [item.spectrum.angle_deg if by_wavelength else item.spectrum.wavelength_nm for item in spectra]
+    shared = len(spectra) > 1 and all(axis.size == 1 and axis[0] == axes[0][0] for axis in axes)
+    for item, axis in zip(spectra, axes, strict=True):
+        for row, value in enumerate(axis.tolist()):
+            text = f"{value:g}°" if by_wavelength else f"{value:g} nm"
+            parts = [item.name] * (len(spectra) > 1) + [text] * (not shared)
             yield Curve(item.spectrum, row, ", ".join(parts))
 
 

@@ -202,13 +202,15 @@ def label_lines(axes: Axes, labels: Sequence[str]) -> None:
     width, height = (figure.get_size_inches() if figure is not None else np.ones(2)) * (place.width, place.height)
     low, high = axes.get_ylim()
     lines = axes.get_lines()
+    left, right = axes.get_xlim()
+    stops = [(_last_finite(line.get_xdata()) - left) / (right - left) for line in lines]
     ends = np.clip([(_last_finite(line.get_ydata()) - low) / (high - low) for line in lines], 0.0, 1.0)
     places = _spread(ends, np.full(len(labels), 8.0 * 1.2 / 72.0 / height))
     start, stop = 1.0 + 0.12 / width, 1.0 + 0.4 / width
     fixed: dict[str, Any] = {"transform": axes.transAxes, "clip_on": False}
-    for line, label, end, level in zip(lines, labels, ends, places, strict=True):
+    for line, label, last, end, level in zip(lines, labels, stops, ends, places, strict=True):
         look: dict[str, Any] = {"color": line.get_color()}
-        axes.add_artist(Line2D([1.0, start], [end, level], linewidth=0.5, **look, **fixed))
+        axes.add_artist(Line2D([last, 1.0, start], [end, end, level], linewidth=0.5, alpha=0.5, **look, **fixed))
         sample = Line2D([start, stop], [level, level])
         sample.update_from(line)
         sample.set_marker("")

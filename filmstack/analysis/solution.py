@@ -98,11 +98,13 @@ class Coherent:
 
     def amplitude_reflectance(self, p: bool) -> ComplexArray:
         """Return r."""
-        return as_complex(tuple(self._shaped(np.broadcast_to(x, self.group.shape)) for x in self._front(p).r))
+        re, im = (self._shaped(np.broadcast_to(x, self.group.shape)) for x in self._front(p).r)
+        return as_complex((re, im))
 
     def amplitude_transmittance(self, p: bool) -> ComplexArray:
         """Return t."""
-        return as_complex(tuple(self._shaped(np.broadcast_to(x, self.group.shape)) for x in self._front(p).t))
+        re, im = (self._shaped(np.broadcast_to(x, self.group.shape)) for x in self._front(p).t)
+        return as_complex((re, im))
 
 
 class Incoherent:

@@ -17,7 +17,7 @@ from filmstack.wave import kernels
 from filmstack.wave.finish import as_complex, fields, halvings
 
 if TYPE_CHECKING:
-    from filmstack.arraytypes import FloatArray
+    from filmstack.arraytypes import ComplexArray, FloatArray
     from filmstack.wave.route import Group
 
 
@@ -56,7 +56,7 @@ def absorbed(group: Group, trace: FloatArray, p: bool) -> FloatArray:
     ----------
     group : Group
         The films.
-    trace : ndarray, shape (layer + 1, STATE_ROWS, sample, point)
+    trace : ndarray, shape (layer + 1, sample, STATE_ROWS, point)
         Fields in front of each layer and at the exit.
     p : bool
         p, else s.
@@ -84,13 +84,13 @@ def absorbed(group: Group, trace: FloatArray, p: bool) -> FloatArray:
         total = -v[:, row].imag * _integral(e, 1j * u[:, row] * h, *parts)
         total = total - u[:, row].imag * _integral(h, 1j * v[:, row] * e, *parts)
         lossy = media.n[1][:, row] != 0.0
-        decay = first[kernels.DECAY] - trace[layer, kernels.DECAY]
+        decay = first[:, kernels.DECAY] - trace[layer, :, kernels.DECAY]
         count = 400.0 * (halvings(first, p) - halvings(trace[layer + 1], p))
         out[layer] = np.where(lossy, kernels.halved(total, decay, count), 0.0)
     return out
 
 
-def _parts(kappa: FloatArray, x: FloatArray) -> tuple[FloatArray, FloatArray, FloatArray]:
+def _parts(kappa: ComplexArray, x: FloatArray) -> tuple[FloatArray, FloatArray, ComplexArray]:
     """Return k0 times the integrals of |cos|^2, |S|^2 and cos S*, each times exp(-2 |Im delta|)."""
     alpha, beta = kappa.real, -kappa.imag
     growth, turn = 2.0 * np.abs(beta) * x, 2.0 * alpha * x
@@ -104,7 +104,7 @@ def _parts(kappa: FloatArray, x: FloatArray) -> tuple[FloatArray, FloatArray, Fl
     return even, np.asarray(odd), np.asarray(cross)
 
 
-def _integral(a: FloatArray, b: FloatArray, even: FloatArray, odd: FloatArray, cross: FloatArray) -> FloatArray:
+def _integral(a: ComplexArray, b: ComplexArray, even: FloatArray, odd: FloatArray, cross: ComplexArray) -> FloatArray:
     """Return the integral of |cos a + S b|^2."""
     return np.asarray(
         (a.real**2 + a.imag**2) * even + (b.real**2 + b.imag**2) * odd + 2.0 * (a * np.conj(b) * cross).real

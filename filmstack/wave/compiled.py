@@ -41,8 +41,9 @@ def _cache_folder() -> Path:
 
 def _compile() -> dict[str, Callable[..., Any]]:
     namespace: dict[str, Any] = {**vars(kernels), "TILE": TILE}
-    before = numba.config.CACHE_DIR
-    numba.config.CACHE_DIR = str(_cache_folder())
+    config: Any = numba.config
+    before = config.CACHE_DIR
+    config.CACHE_DIR = str(_cache_folder())
     try:
         for name in kernels.COMPILED:
             plain = vars(kernels)[name]
@@ -52,7 +53,7 @@ def _compile() -> dict[str, Callable[..., Any]]:
                 nogil=True, cache=True, error_model="numpy", forceinline=not name.startswith("run_")
             )(copy)
     finally:
-        numba.config.CACHE_DIR = before
+        config.CACHE_DIR = before
     return {name: namespace[name] for name in kernels.COMPILED}
 
 

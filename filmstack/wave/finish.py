@@ -24,13 +24,13 @@ LOG10_E = float(np.log10(np.e))
 
 def fields(state: FloatArray, p: bool) -> tuple[Pair, Pair]:
     """Return the stored E and H, each as a pair of reals."""
-    er, hi, hr, ei = state[4:8] if p else state[0:4]
+    er, hi, hr, ei = np.moveaxis(state[:, 4:8] if p else state[:, 0:4], 1, 0)
     return (er, ei), (hr, hi)
 
 
 def halvings(state: FloatArray, p: bool) -> FloatArray:
     """Return the count of factors 2^200 taken out of a polarization."""
-    return np.asarray(state[kernels.SCALE_P if p else kernels.SCALE_S])
+    return np.asarray(state[:, kernels.SCALE_P if p else kernels.SCALE_S])
 
 
 def as_complex(pair: Pair) -> ComplexArray:
@@ -46,7 +46,7 @@ class Front:
     ----------
     ends : Ends
         The end media of the group.
-    state : ndarray, shape (STATE_ROWS, sample, point)
+    state : ndarray, shape (sample, STATE_ROWS, point)
         Fields at the first interface.
     p : bool
         p, else s.
@@ -88,15 +88,15 @@ class Front:
         """Amplitude transmittance, the ratio of full electric fields."""
         with np.errstate(divide="ignore", invalid="ignore"):
             re, im = over(self.ends.amplitude(self.p), self.waves[0])
-        sign = 1.0 - 2.0 * np.mod(self.state[kernels.TURNS], 2.0)
+        sign = 1.0 - 2.0 * np.mod(self.state[:, kernels.TURNS], 2.0)
         re, im = (np.where(self.grazing, 0.0, sign * part) for part in (re, im))
-        decay, count = 0.5 * self.state[kernels.DECAY], 200.0 * halvings(self.state, self.p)
+        decay, count = 0.5 * self.state[:, kernels.DECAY], 200.0 * halvings(self.state, self.p)
         return np.asarray(kernels.halved(re, decay, count)), np.asarray(kernels.halved(im, decay, count))
 
     @cached_property
     def log10_size(self) -> FloatArray:
         """log10 of the true |a1 E + a2 H|^2, beyond the range of doubles too."""
-        stored = np.log10(self.size) + LOG10_E * self.state[kernels.DECAY]
+        stored = np.log10(self.size) + LOG10_E * self.state[:, kernels.DECAY]
         return np.asarray(stored + 400.0 * LOG10_2 * halvings(self.state, self.p))
 
     @property
@@ -108,5 +108,5 @@ class Front:
     def part(self, numerator: FloatArray) -> FloatArray:
         """Return numerator / |D|^2 with the true D."""
         return np.asarray(
-            kernels.halved(numerator / self.size, self.state[kernels.DECAY], 400.0 * halvings(self.state, self.p))
+            kernels.halved(numerator / self.size, self.state[:, kernels.DECAY], 400.0 * halvings(self.state, self.p))
         )

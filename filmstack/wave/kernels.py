@@ -59,6 +59,10 @@ COMPILED = (
     "write_state",
     "run_lossless",
     "run_lossy",
+    "quadratic",
+    "bilinear",
+    "gradient_rows",
+    "run_gradient",
 )
 """Functions of the compiled copy, each after those it calls."""
 
@@ -352,7 +356,7 @@ def write_state(points: int, first: int, sample: int, state: Any, trace: Any) ->
     """Write the whole state of a tile."""
     for k in range(STATE_ROWS):
         for i in range(points):
-            trace[k, sample, first + i] = state[k * TILE + i]
+            trace[sample, k, first + i] = state[k * TILE + i]
 
 
 def run_lossless(
@@ -385,7 +389,7 @@ def run_lossless(
         Scratch.
     out : array, shape (4, sample, point)
         R_s, T_s, R_p, T_p, written where `trace` has no level.
-    trace : array, shape (level, STATE_ROWS, sample, point)
+    trace : array, shape (level, sample, STATE_ROWS, point)
         No level; one, the fields at the first interface; or layer + 1, those in front of each
         layer and at the exit.
     both : bool
@@ -442,3 +446,96 @@ def run_lossy(
                 write_powers(points, first, sample, end, state, out, both)
             else:
                 write_state(points, first, sample, state, trace[0])
+
+
+# Rows of a gradient's front: factors of the quadratic and of the bilinear form, the shares of dR and dT
+# that come from either, and the exponents; per polarization.
+FORM_QUADRATIC, FORM_BILINEAR, SHARES, FRONT_SCALE, FRONT_DECAY, FRONT_ROWS = 0, 2, 4, 8, 9, 10
+
+
+def quadratic(er: Any, ei: Any, hr: Any, hi: Any, ur: Any, ui: Any, vr: Any, vi: Any) -> tuple[Any, Any]:
+    """Return v E^2 - u H^2: by reciprocity what a thickness does to r."""
+    xr, xi = er * er - ei * ei, 2.0 * er * ei
+    yr, yi = hr * hr - hi * hi, 2.0 * hr * hi
+    return (vr * xr - vi * xi) - (ur * yr - ui * yi), (vr * xi + vi * xr) - (ur * yi + ui * yr)
+
+
+def bilinear(
+    er: Any, ei: Any, hr: Any, hi: Any, fr: Any, fi: Any, gr: Any, gi: Any, ur: Any, ui: Any, vr: Any, vi: Any
+) -> tuple[Any, Any]:
+    """Return u w0 H + v w1 E with w1 = f, w0 = g: what a thickness does to 1 / t."""
+    xr, xi = gr * hr - gi * hi, gr * hi + gi * hr
+    yr, yi = fr * er - fi * ei, fr * ei + fi * er
+    return (ur * xr - ui * xi) + (vr * yr - vi * yi), (ur * xi + ui * xr) + (vr * yi + vi * yr)
+
+
+def gradient_rows(
+    points: int, p: int, layer: int, psi: Any, w: Any, medium: Any, front: Any, out: Any, powers: bool, scaled: bool
+) -> None:
+    """Write one layer's dR, dT, or dr and d ln(1/t), of one polarization (p = 0 or 1)."""
+    k, f, o = 4 * p, FRONT_ROWS * p, (2 if powers else 4) * p
+    for i in range(points):
+        er, hi, hr, ei = psi[k, i], psi[k + 1, i], psi[k + 2, i], psi[k + 3, i]
+        fr, gi, gr, fi = w[k, i], w[k + 1, i], w[k + 2, i], w[k + 3, i]
+        ur, ui, vr, vi = medium[k, i], medium[k + 1, i], medium[k + 2, i], medium[k + 3, i]
+        qr, qi = quadratic(er, ei, hr, hi, ur, ui, vr, vi)
+        zr, zi = bilinear(er, ei, hr, hi, fr, fi, gr, gi, ur, ui, vr, vi)
+        ar, ai = front[f + FORM_QUADRATIC, i], front[f + FORM_QUADRATIC + 1, i]
+        br, bi = front[f + FORM_BILINEAR, i], front[f + FORM_BILINEAR + 1, i]
+        a_re, a_im = ar * qr - ai * qi, ar * qi + ai * qr
+        b_re, b_im = br * zr - bi * zi, br * zi + bi * zr
+        if scaled:
+            n, m, n0 = psi[SCALE_S + p, i], w[SCALE_S + p, i], front[f + FRONT_SCALE, i]
+            y = front[f + FRONT_DECAY, i] - psi[DECAY, i]
+            y = y * ((y > 0.0) * 1.0)
+            a_re, a_im = halved(a_re, y, 400.0 * (n0 - n)), halved(a_im, y, 400.0 * (n0 - n))
+            b_re, b_im = halved(b_re, 0.0 * y, 200.0 * (n0 - n - m)), halved(b_im, 0.0 * y, 200.0 * (n0 - n - m))
+        if powers:
+            out[o, layer, i] = front[f + SHARES, i] * a_re + front[f + SHARES + 1, i] * b_re
+            out[o + 1, layer, i] = front[f + SHARES + 2, i] * b_re + front[f + SHARES + 3, i] * a_re
+        else:
+            out[o, layer, i], out[o + 1, layer, i] = a_re, a_im
+            out[o + 2, layer, i], out[o + 3, layer, i] = b_re, b_im
+
+
+def run_gradient(
+    work: Any,
+    points: int,
+    order: Any,
+    trace: Any,
+    back: Any,
+    media: Any,
+    front: Any,
+    out: Any,
+    powers: bool,
+    scaled: bool,
+    both: bool,
+) -> None:
+    """Compute the thickness gradients of a block of layers.
+
+    Parameters
+    ----------
+    work : (int, int)
+        First and last layer (the last excluded).
+    points : int
+        Number of points.
+    order : sequence of int, shape (layer,)
+        Row of `media` of each layer.
+    trace, back : array, shape (layer + 1, 1, STATE_ROWS, point)
+        Fields in front of each layer; the row vector (w0, w1) = (a1, a2) carried from the first
+        interface, level counted from the exit.
+    media : array, shape (medium, 8, point)
+        u and v of s, then of p, real and imaginary part.
+    front : array, shape (2 FRONT_ROWS, point)
+        Factors, per polarization.
+    out : array, shape (4 or 8, layer, point)
+        dR_s, dT_s, dR_p, dT_p, or dr and d ln(1/t) as pairs of reals.
+    powers, scaled, both : bool
+        dR and dT instead of amplitudes; some power of two or decay was taken out; also p.
+    """
+    layers = len(order)
+    first, last = work
+    for j in range(first, last):
+        gradient_rows(points, 0, j, trace[j, 0], back[layers - j, 0], media[order[j]], front, out, powers, scaled)
+        if both:
+            gradient_rows(points, 1, j, trace[j, 0], back[layers - j, 0], media[order[j]], front, out, powers, scaled)

@@ -102,7 +102,7 @@ class PlateChain:
         return [-2.0 * self.k0 * thickness * normal_wavenumber(n, b)[0][1] for n, thickness in self.plates]
 
     @cached_property
-    def _solved(self) -> tuple[list[FloatArray], list[FloatArray], list[FloatArray]]:
+    def solved(self) -> tuple[list[FloatArray], list[FloatArray], list[FloatArray]]:
         """Return per group: B/F in front of it, B/F behind it, and the gap 1 - R_back B/F."""
         ratios: list[FloatArray] = []
         loads: list[FloatArray] = []
@@ -157,7 +157,7 @@ class PlateChain:
         closed = (last.flux(self.p) == 0.0) & np.all([g.lossless for g in self.groups], axis=0)
         for n, _ in self.plates:
             closed = closed & (n[1] == 0.0)
-        return np.where(self.grazing | closed, 1.0, self._solved[0][0])
+        return np.where(self.grazing | closed, 1.0, self.solved[0][0])
 
     @cached_property
     def forward(self) -> list[tuple[FloatArray, FloatArray]]:
@@ -172,7 +172,7 @@ class PlateChain:
                 front = steps[-1][1] * np.exp(-self.decays[place - 1])
                 behind = front * group.transmitted
             with np.errstate(divide="ignore", invalid="ignore"):
-                steps.append((front, np.where(self.grazing, 0.0, behind / self._solved[2][place])))
+                steps.append((front, np.where(self.grazing, 0.0, behind / self.solved[2][place])))
         return steps
 
     @cached_property
@@ -201,7 +201,7 @@ class PlateChain:
             out = self._exit_flux if place == len(self.groups) - 1 else _square(group.front.ends.exit_fields(self.p)[0])
             size = _square(a1) if place else a1[0] * a2[0]
             with np.errstate(divide="ignore", invalid="ignore"):
-                total = total + np.log10(4.0 * size * out) - group.front.log10_size - np.log10(self._solved[2][place])
+                total = total + np.log10(4.0 * size * out) - group.front.log10_size - np.log10(self.solved[2][place])
         for decay in self.decays:
             total = total - LOG10_E * decay
         return np.where(self.grazing, -np.inf, total)
@@ -214,7 +214,7 @@ class PlateChain:
         group = self.groups[place]
         a1, a2 = group.front.ends.incident_pair(self.p)
         front = 4.0 * (a1[0] * a2[0] if place == 0 else _square(a1) * self.forward[place][0])
-        back = self._solved[1][place] * self.forward[place][1] * 4.0 * _square(group.back.ends.incident_pair(self.p)[0])
+        back = self.solved[1][place] * self.forward[place][1] * 4.0 * _square(group.back.ends.incident_pair(self.p)[0])
         return np.where(self.grazing, 0.0, front), np.where(self.grazing, 0.0, back)
 
     def plate_absorptance(self) -> FloatArray:
@@ -224,7 +224,7 @@ class PlateChain:
             y = over(*self.groups[place].back.ends.incident_pair(self.p))
             fade = self.decays[place]
             f0, fd = self.forward[place][1], self.forward[place + 1][0]
-            bd = self._solved[0][place + 1] * fd
+            bd = self.solved[0][place + 1] * fd
             b0 = bd * np.exp(-fade)
             r_front, r_back = self.groups[place].back.r, self.groups[place + 1].front.r
             power = y[0] * (-np.expm1(-fade)) * (f0 + bd) + 2.0 * y[1] * (-r_front[1] * b0 - r_back[1] * fd)

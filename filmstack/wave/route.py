@@ -90,7 +90,7 @@ class Group:
 def powers(group: Group) -> FloatArray:
     """Return R_s, T_s, R_p, T_p, shape (4, sample, point)."""
     out = np.empty((4, *group.shape))
-    _run(group, out, np.empty((0, kernels.STATE_ROWS, *group.shape)))
+    _run(group, out, np.empty((0, group.shape[0], kernels.STATE_ROWS, group.shape[1])))
     if not group.oblique:
         out[2:] = out[:2]
     for chosen, cut in _blocked(group):
@@ -104,19 +104,20 @@ def states(group: Group, every_layer: bool = False) -> FloatArray:
 
     Returns
     -------
-    ndarray, shape (1 or layer + 1, STATE_ROWS, sample, point)
+    ndarray, shape (1 or layer + 1, sample, STATE_ROWS, point)
         Level 0 is the first interface, the last level the exit.
     """
     levels = len(group.order) + 1 if every_layer else 1
-    trace = np.empty((levels, kernels.STATE_ROWS, *group.shape))
+    samples, points = group.shape
+    trace = np.empty((levels, samples, kernels.STATE_ROWS, points))
     _run(group, np.empty((4, 0, 0)), trace)
     if not group.oblique:
-        trace[:, 4:8], trace[:, kernels.SCALE_P] = trace[:, 0:4], trace[:, kernels.SCALE_S]
+        trace[:, :, 4:8], trace[:, :, kernels.SCALE_P] = trace[:, :, 0:4], trace[:, :, kernels.SCALE_S]
     if not every_layer:
         for chosen, cut in _blocked(group):
             part = states(cut)
             for row in (4, 5, 6, 7, kernels.SCALE_P):
-                trace[0, row, chosen[0], chosen[1]] = part[0, row, 0]
+                trace[0, chosen[0], row, chosen[1]] = part[0, 0, row]
     return trace
 
 
@@ -200,7 +201,7 @@ def _run_arrays(group: Group, name: str, chosen: IntArray, out: FloatArray, trac
                 np.ascontiguousarray(cut_ends[..., p:q].transpose(1, 0, 2))[np.newaxis, np.newaxis],
                 np.empty((kernels.STATE_ROWS, b - a, q - p)),
                 out[:, np.newaxis, np.newaxis, a:b, p:q],
-                trace[:, :, np.newaxis, np.newaxis, a:b, p:q],
+                trace[:, a:b, :, p:q].transpose(0, 2, 1, 3)[:, np.newaxis, :, np.newaxis],
                 group.oblique,
             )
 

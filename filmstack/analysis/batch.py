@@ -136,8 +136,8 @@ def _check_index(asked: Request, material: Material, values: ComplexArray, start
         value = values[sample, place]
         raise ArgumentError(
             f"index_change: {material.label}: sample {start + sample}: expected n >= 0 and k >= 0, got n = "
-            f"{value.real:g}, k = {-value.imag:g} at {asked.wavelength_nm[place]:g} nm. Change n by a real number and k "
-            "by -i times a number, or allow gain"
+            f"{value.real:g}, k = {-value.imag:g} at {asked.wavelength_nm[place]:g} nm. Change n by a real number "
+            "and k by -i times a number, or allow gain"
         )
 
 

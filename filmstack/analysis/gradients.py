@@ -45,9 +45,15 @@ class _Amplitudes:
             )
         self.group = group
         self.passes = Passes(group)
+        self._known: dict[bool, tuple[ComplexArray, ComplexArray]] = {}
 
     def rows(self, p: bool) -> tuple[ComplexArray, ComplexArray]:
-        """Return dr and d ln(1/t), shape (row, point)."""
+        """Return dr and d ln(1/t), shape (row, point), computed once."""
+        if p not in self._known:
+            self._known[p] = self._rows(p)
+        return self._known[p]
+
+    def _rows(self, p: bool) -> tuple[ComplexArray, ComplexArray]:
         raise NotImplementedError
 
     def r(self, p: bool) -> ComplexArray:
@@ -64,7 +70,7 @@ class _Amplitudes:
 
 
 class _ByThickness(_Amplitudes):
-    def rows(self, p: bool) -> tuple[ComplexArray, ComplexArray]:
+    def _rows(self, p: bool) -> tuple[ComplexArray, ComplexArray]:
         dr = self._table[4 * p : 4 * p + 4]
         return dr[0] + 1j * dr[1], dr[2] + 1j * dr[3]
 
@@ -79,7 +85,7 @@ class _ByThickness(_Amplitudes):
 
 
 class _ByIndex(_Amplitudes):
-    def rows(self, p: bool) -> tuple[ComplexArray, ComplexArray]:
+    def _rows(self, p: bool) -> tuple[ComplexArray, ComplexArray]:
         pairs = [self.passes.index(layer, p) for layer in range(len(self.group.order))]
         return _stacked(pairs, self.group.shape[1])
 
@@ -91,7 +97,7 @@ class _ByNeedle(_Amplitudes):
         super().__init__(group)
         self.levels, self.needle = levels, needle
 
-    def rows(self, p: bool) -> tuple[ComplexArray, ComplexArray]:
+    def _rows(self, p: bool) -> tuple[ComplexArray, ComplexArray]:
         v = as_complex(self.needle.v_p if p else self.needle.v_s)[0, 0]
         u = as_complex(self.needle.u_p)[0, 0] if p else np.ones_like(v)
         return _stacked([self.passes.forms(int(level), p, u, v) for level in self.levels], self.group.shape[1])
@@ -200,12 +206,6 @@ class _Gradient:
     notes: tuple[str, ...]
     _rows: _Rows
 
-    def plot(self, ax: Axes | None = None) -> Axes:
-        """Draw the derivative of R, mean of s and p, of every row against wavelength at the first angle."""
-        from filmstack.report.rows_plot import draw_gradient
-
-        return draw_gradient(self, ax)
-
 
 @dataclass(frozen=True, eq=False)
 class ThicknessGradient(_Gradient):
@@ -265,6 +265,12 @@ class ThicknessGradient(_Gradient):
         """Return a tidy table: a row a layer, angle and wavelength."""
         return _pair_frame(self, ("dR_s", "dR_p", "dR", "dT_s", "dT_p", "dT"), "layer")
 
+    def plot(self, ax: Axes | None = None) -> Axes:
+        """Draw the derivative of R, mean of s and p, of every row against wavelength at the first angle."""
+        from filmstack.report.rows_plot import draw_gradient
+
+        return draw_gradient(self, ax)
+
 
 @dataclass(frozen=True, eq=False)
 class NeedleGradient(ThicknessGradient):
@@ -310,6 +316,12 @@ class IndexGradient(_Gradient):
         """Return a tidy table: a row a layer, angle and wavelength."""
         names = tuple(f"{kind}_{p}_{x}" for kind in ("dR", "dT") for p in "sp" for x in ("dn", "dk"))
         return _pair_frame(self, names, "layer")
+
+    def plot(self, ax: Axes | None = None) -> Axes:
+        """Draw the derivative of R, mean of s and p, of every row against wavelength at the first angle."""
+        from filmstack.report.rows_plot import draw_gradient
+
+        return draw_gradient(self, ax)
 
 
 def thickness_gradient(stack: Stack, wavelength_nm: ArrayLike, angle_deg: ArrayLike = 0.0) -> ThicknessGradient:

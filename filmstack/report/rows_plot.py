@@ -6,13 +6,13 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from filmstack.analysis.gradients import IndexGradient, ThicknessGradient
 from filmstack.report.style import GREY, INK, Margins, line_style, panel_grid, quiet_style
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
 
     from filmstack.analysis.batch import BatchSpectrum
-    from filmstack.analysis.gradients import IndexGradient, ThicknessGradient
 
 
 def draw_batch(batch: BatchSpectrum, axes: Axes | None = None) -> Axes:
@@ -56,8 +56,8 @@ def draw_gradient(gradient: ThicknessGradient | IndexGradient, axes: Axes | None
     -------
     Axes
     """
-    by_index = hasattr(gradient, "dR_dn")
-    values = (gradient.dR_dn if by_index else gradient.dR)[:, 0]
+    by_index = not isinstance(gradient, ThicknessGradient)
+    values = (gradient.dR_dn if isinstance(gradient, IndexGradient) else gradient.dR)[:, 0]
     depth = getattr(gradient, "depth_nm", None)
     with quiet_style():
         axes = _axes(axes)

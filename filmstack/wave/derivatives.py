@@ -232,13 +232,16 @@ def layer_integrals(kappa: ComplexArray, k0: FloatArray, d: float) -> tuple[Comp
     plain = np.asarray(np.exp(-np.abs(delta.imag)), dtype=complex)
     sinc = np.where(small, plain * _sum(x, 0), sine / safe)
     sinc_2 = np.where(small, plain**2 * _sum(4.0 * x, 0), sine * cosine / safe)
-    cc = 0.5 * d * (fade + sinc_2)
-    ss = np.where(small, 2.0 * d * (k0 * d) ** 2 * plain**2 * _sum(4.0 * x, 1), 0.5 * d * (fade - sinc_2) / inverse)
-    cs = 0.5 * k0 * d * d * sinc * sinc
-    fcc = 0.5 * d * (cosine + sinc)
-    fss = np.where(small, 0.5 * d * (k0 * d) ** 2 * plain * _sum(x, 2), 0.5 * d * (sinc - cosine) / inverse)
-    fcs = 0.5 * k0 * d * d * sinc
-    return cc, ss, cs, fcc, fss, fcs
+    cube = 0.5 * d * (k0 * d) ** 2
+    rows = (
+        0.5 * d * (fade + sinc_2),
+        np.where(small, 4.0 * cube * plain**2 * _sum(4.0 * x, 1), 0.5 * d * (fade - sinc_2) / inverse),
+        0.5 * k0 * d * d * sinc * sinc,
+        0.5 * d * (cosine + sinc),
+        np.where(small, cube * plain * _sum(x, 2), 0.5 * d * (sinc - cosine) / inverse),
+        0.5 * k0 * d * d * sinc,
+    )
+    return tuple(np.asarray(row, dtype=complex) for row in rows)
 
 
 def _sum(x: ComplexArray, kind: int) -> ComplexArray:

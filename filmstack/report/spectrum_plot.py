@@ -34,6 +34,7 @@ if TYPE_CHECKING:
     from matplotlib.axes import Axes
     from matplotlib.collections import QuadMesh
     from matplotlib.figure import Figure
+    from matplotlib.lines import Line2D
 
     from filmstack.analysis.spectrum import Spectrum
     from filmstack.arraytypes import FloatArray
@@ -140,18 +141,20 @@ def draw_spectrum(spectrum: Spectrum, axes: Axes | None = None) -> Axes:
             axes = panels[0, 0]
         curves = list(_curves([Labelled("", spectrum)], view))
         _refuse_many(len(quantities) * len(curves), view)
+        earlier = [line for line in axes.get_lines() if line.get_transform() == axes.transData]
+        lines: list[Line2D] = []
         labels: list[str] = []
         for name in quantities:
             for curve in curves:
                 x, y = _points(curve, name, "", view, "percent")
-                axes.plot(x, y, **line_style(len(labels)))
+                lines += axes.plot(x, y, **line_style(len(earlier) + len(labels)))
                 labels.append(f"{name} {curve.label}" if len(curves) > 1 else name)
-        axes.set_ylim(*percent_limits(np.concatenate([np.asarray(line.get_ydata()) for line in axes.get_lines()])))
+        axes.set_ylim(*percent_limits(np.concatenate([np.asarray(line.get_ydata()) for line in earlier + lines])))
         axes.margins(x=0)
         axes.set_ylabel("R, T, A (%)" if "A" in quantities else "R, T (%)")
         axes.set_xlabel(_x_label([spectrum], view))
         axes.set_title(f"T {spectrum.transmittance_into}", color=GREY, size=8)
-        label_lines(axes, labels)
+        label_lines(axes, lines, labels)
     return axes
 
 
@@ -190,9 +193,9 @@ def _line_figure(
                 axes.set_title(_polarization_title(suffix), size=8, color=GREY)
     for place, name in enumerate(quantities):
         _same_limits(list(panels[:, place]) if table else [panels[place, 0]], _as_od(name, scale))
-    for axes in panels.flat:
-        if len(labels) > 1:
-            label_lines(axes, labels)
+    if len(labels) > 1:
+        for axes in panels.flat:
+            label_lines(axes, list(axes.get_lines()), labels)
     for axes in panels[-1]:
         axes.set_xlabel(_x_label([item.spectrum for item in spectra], view))
     return figure

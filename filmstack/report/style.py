@@ -187,37 +187,47 @@ def label_room(labels: Sequence[str]) -> float:
     return 0.25 + (0.4 + 0.062 * max(map(len, labels)) if len(labels) > 1 else 0.0)
 
 
-def label_lines(axes: Axes, labels: Sequence[str]) -> None:
+def label_lines(axes: Axes, lines: Sequence[Line2D], labels: Sequence[str]) -> None:
     """Write the name of each line of a panel at its right end, with a sample of its dashes.
 
     Parameters
     ----------
     axes : Axes
-        Panel whose lines and limits are final.
+        Panel whose limits are final.
+    lines : sequence of Line2D
+        Lines of the panel.
     labels : sequence of str
-        One a line, in the order drawn.
+        One a line.
     """
     figure = axes.get_figure(root=True)
     place = axes.get_position()
     width, height = (figure.get_size_inches() if figure is not None else np.ones(2)) * (place.width, place.height)
     low, high = axes.get_ylim()
-    lines = axes.get_lines()
     left, right = axes.get_xlim()
     stops = [(_last_finite(line.get_xdata()) - left) / (right - left) for line in lines]
     ends = np.clip([(_last_finite(line.get_ydata()) - low) / (high - low) for line in lines], 0.0, 1.0)
     places = _spread(ends, np.full(len(labels), 8.0 * 1.2 / 72.0 / height))
     start, stop = 1.0 + 0.12 / width, 1.0 + 0.4 / width
-    fixed: dict[str, Any] = {"transform": axes.transAxes, "clip_on": False}
     for line, label, last, end, level in zip(lines, labels, stops, ends, places, strict=True):
-        look: dict[str, Any] = {"color": line.get_color()}
-        axes.add_artist(Line2D([last, 1.0, start], [end, end, level], linewidth=0.5, alpha=0.5, **look, **fixed))
+        lead = Line2D([last, 1.0, start], [end, end, level], linewidth=0.5, alpha=0.5, color=line.get_color())
         sample = Line2D([start, stop], [level, level])
         sample.update_from(line)
         sample.set_marker("")
-        sample.set_transform(axes.transAxes)
-        sample.set_clip_on(False)
-        axes.add_artist(sample)
-        axes.text(stop + 0.05 / width, level, label, size=8.0, va="center", ha="left", **look, **fixed)
+        for mark in (lead, sample):
+            mark.set_transform(axes.transAxes)
+            mark.set_clip_on(False)
+            axes.add_artist(mark)
+        axes.text(
+            stop + 0.05 / width,
+            level,
+            label,
+            size=8.0,
+            va="center",
+            ha="left",
+            color=line.get_color(),
+            transform=axes.transAxes,
+            clip_on=False,
+        )
 
 
 def save_figure(figure: Figure, path: Path) -> None:

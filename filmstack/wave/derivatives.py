@@ -19,7 +19,7 @@ import numpy as np
 from filmstack.wave import kernels
 from filmstack.wave.finish import Front, as_complex, fields, halvings
 from filmstack.wave.media import Ends, Media, Pair, over, times
-from filmstack.wave.route import Group, compiler_pays, states
+from filmstack.wave.route import BLOCK_CELLS, WORTH_SHARING, Group, compiler_pays, states
 from filmstack.work.pool import run_blocks
 
 if TYPE_CHECKING:
@@ -139,7 +139,7 @@ class Passes:
         group = self.group
         layers, points = len(group.order), group.shape[1]
         order: IntArray = np.ascontiguousarray(group.order)
-        many = max(1, min(2_000_000 // points, -(-layers // 4)))
+        many = layers if layers * points < WORTH_SHARING else max(1, min(BLOCK_CELLS // points, -(-layers // 8)))
 
         def do(work: tuple[int, int]) -> None:
             run = FUNCTIONS["run_gradient"]

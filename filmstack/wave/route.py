@@ -32,6 +32,8 @@ WORTH_CALLING = 20_000
 """The same once the compiler is there."""
 ARRAY_CELLS = 8192
 """Points x samples of one piece of array work: its rows stay in the nearest cache."""
+WORTH_SHARING = 500_000
+"""The same from which a second thread pays."""
 BLOCK_CELLS = 8_000_000
 """Layer x point x sample of one block of compiled work, well below a tenth of a second."""
 
@@ -218,20 +220,23 @@ def _run_compiled(group: Group, name: str, chosen: IntArray, out: FloatArray, tr
     order = np.ascontiguousarray(group.order, dtype=np.int64)
     starts = np.arange(0, chosen.size, TILE)
     tiles = np.stack([starts, np.minimum(TILE, chosen.size - starts)], axis=1)
-    many = max(1, min(BLOCK_CELLS // (layers * min(TILE, chosen.size)), -(-samples // 4)))
 
     def do(work: tuple[int, int, int, int]) -> None:
         kernel(work, tiles, order, thickness, media, ends, np.empty(kernels.STATE_ROWS * TILE), out, trace, both)
 
-    wide = max(1, min(BLOCK_CELLS // (layers * TILE * many), -(-len(tiles) // 4))) if samples < 8 else len(tiles)
-    run_blocks(
-        do,
-        (
-            (a, min(a + many, samples), t, min(t + wide, len(tiles)))
-            for t in range(0, len(tiles), wide)
-            for a in range(0, samples, many)
-        ),
-    )
+    run_blocks(do, _blocks(samples, len(tiles), layers * min(TILE, chosen.size)))
+
+
+def _blocks(samples: int, tiles: int, cells: int) -> list[tuple[int, int, int, int]]:
+    """Cut samples and tiles into blocks; `cells` is layer x point of one sample and tile."""
+    parts = 1 if samples * tiles * cells < WORTH_SHARING else 8
+    many = max(1, min(BLOCK_CELLS // cells, -(-samples // parts)))
+    wide = max(1, min(BLOCK_CELLS // (cells * many), -(-tiles * samples // (parts * many))))
+    return [
+        (a, min(a + many, samples), t, min(t + wide, tiles))
+        for t in range(0, tiles, wide)
+        for a in range(0, samples, many)
+    ]
 
 
 def _tiled(rows: FloatArray, tile: int) -> FloatArray:

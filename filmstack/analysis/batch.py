@@ -239,21 +239,29 @@ def _value(solution: Solution, quantity: str, p: bool) -> Any:  # noqa: ANN401 -
 def _computed(samples: _Samples, quantities: tuple[str, ...], start: int, stop: int) -> BatchSpectrum:
     """Compute samples start to stop, a piece at a time."""
     asked = samples.nominal
-    count, shape = stop - start, asked.shape
-    values: dict[str, Any] = {}
-    for quantity in quantities:
-        lead = (len(asked.stack.films),) if quantity == "A_layers" else ()
-        kind = complex if quantity in _AMPLITUDES else float
-        values |= {name: np.empty((*lead, count, *shape), dtype=kind) for name, _ in _PARTS[quantity]}
     layers = len(asked.stack.films) if {"A", "one_minus_R", "A_layers"} & set(quantities) else 1
-    many = max(1, PIECE_CELLS // (shape[0] * shape[1] * max(1, layers)))
-    for a in range(start, stop, many):
-        b = min(a + many, stop)
-        solution = solve(samples.piece(a, b))
-        for quantity in quantities:
-            for name, p in _PARTS[quantity]:
-                values[name][..., a - start : b - start, :, :] = _value(solution, quantity, p)
+    many = max(1, PIECE_CELLS // (math.prod(asked.shape) * max(1, layers)))
+    if stop - start <= many:
+        values = _pieces(solve(samples.piece(start, stop)), quantities)
+    else:
+        values = {}
+        for a in range(start, stop, many):
+            b = min(a + many, stop)
+            for name, piece in _pieces(solve(samples.piece(a, b)), quantities).items():
+                if name not in values:
+                    values[name] = np.empty((*piece.shape[:-3], stop - start, *asked.shape), piece.dtype)
+                values[name][..., a - start : b - start, :, :] = piece
     return BatchSpectrum(asked.wavelength_nm, asked.angle_deg[0], start, values, asked.notes)
+
+
+def _pieces(solution: Solution, quantities: tuple[str, ...]) -> dict[str, Any]:
+    """Return the arrays asked for; R and T share memory, so one without the other is copied out."""
+    alone = len({"R", "T"} & set(quantities)) == 1
+    return {
+        name: np.array(_value(solution, quantity, p)) if alone and quantity in "RT" else _value(solution, quantity, p)
+        for quantity in quantities
+        for name, p in _PARTS[quantity]
+    }
 
 
 def batch_spectrum(

@@ -17,7 +17,7 @@ from filmstack.errors import CoherenceError
 from filmstack.wave.absorption import absorbed
 from filmstack.wave.finish import Front, as_complex
 from filmstack.wave.plates import Crossing, PlateChain
-from filmstack.wave.route import powers, states
+from filmstack.wave.route import dark, powers, states
 
 if TYPE_CHECKING:
     from filmstack.arraytypes import ComplexArray, FloatArray
@@ -67,7 +67,7 @@ class Coherent:
         return states(self.group)[0]
 
     def _front(self, p: bool) -> Front:
-        return Front(self.group.ends, self._state, p)
+        return Front(self.group.ends, self._state, p, dark(self.group))
 
     def reflectance(self, p: bool) -> FloatArray:
         """Return R."""
@@ -86,7 +86,7 @@ class Coherent:
         if bool(np.all(self.group.media.n[1] == 0.0)):
             return self._shaped(np.zeros((len(self.group.order), *self.group.shape)))
         trace = states(self.group, every_layer=True)
-        front = Front(self.group.ends, trace[0], p)
+        front = Front(self.group.ends, trace[0], p, dark(self.group))
         (ar, _), (cr, _) = self.group.ends.incident_pair(p)
         with np.errstate(divide="ignore", invalid="ignore"):
             values = absorbed(self.group, trace, p) * (4.0 * ar * cr) / front.size
@@ -127,7 +127,7 @@ class Incoherent:
         """Return the solved chain of groups and plates."""
         if p not in self._chains:
             crossings = tuple(
-                Crossing(Front(a.ends, front, p), Front(b.ends, back, p), a.media.lossless)
+                Crossing(Front(a.ends, front, p, dark(a)), Front(b.ends, back, p, dark(b)), a.media.lossless)
                 for a, b, (front, back) in zip(self.groups, self.reversed_groups, self._states, strict=True)
             )
             plates = self.request.stack.plates

@@ -19,7 +19,7 @@ import numpy as np
 from filmstack.wave import kernels
 from filmstack.wave.finish import Front, as_complex, fields, halvings
 from filmstack.wave.media import Ends, Media, Pair, over, times
-from filmstack.wave.route import BLOCK_CELLS, WORTH_SHARING, Group, compiler_pays, states
+from filmstack.wave.route import BLOCK_CELLS, WORTH_SHARING, Group, compiler_pays, dark, states
 from filmstack.work.pool import run_blocks
 
 if TYPE_CHECKING:
@@ -62,7 +62,7 @@ class Passes:
 
     def front(self, p: bool) -> Front:
         """Return the solved first interface."""
-        return Front(self.group.ends, self.trace[0], p)
+        return Front(self.group.ends, self.trace[0], p, dark(self.group))
 
     def factors(self, p: bool) -> tuple[Pair, Pair]:
         """Return -2i k0 a1 a2 / D^2 and i k0 / D, with the stored D."""

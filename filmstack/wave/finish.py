@@ -50,11 +50,14 @@ class Front:
         Fields at the first interface.
     p : bool
         p, else s.
+    dark : ndarray of bool
+        Where no p passes because of a film of N = 0.
     """
 
     ends: Ends
     state: FloatArray
     p: bool
+    dark: BoolArray
 
     @cached_property
     def waves(self) -> tuple[Pair, Pair]:
@@ -89,7 +92,7 @@ class Front:
         with np.errstate(divide="ignore", invalid="ignore"):
             re, im = over(self.ends.amplitude(self.p), self.waves[0])
         sign = 1.0 - 2.0 * np.mod(self.state[:, kernels.TURNS], 2.0)
-        re, im = (np.where(self.grazing, 0.0, sign * part) for part in (re, im))
+        re, im = (np.where(self.grazing | self._closed, 0.0, sign * part) for part in (re, im))
         decay, count = 0.5 * self.state[:, kernels.DECAY], 200.0 * halvings(self.state, self.p)
         return np.asarray(kernels.halved(re, decay, count)), np.asarray(kernels.halved(im, decay, count))
 
@@ -103,10 +106,15 @@ class Front:
     def log10_transmittance(self) -> FloatArray:
         """log10 T, -inf only where no light passes by law."""
         with np.errstate(divide="ignore"):
-            return np.asarray(np.log10(self.ends.flux(self.p)) - self.log10_size)
+            return np.asarray(np.log10(np.where(self._closed, 0.0, self.ends.flux(self.p))) - self.log10_size)
+
+    @property
+    def _closed(self) -> BoolArray:
+        return self.dark if self.p else np.zeros((1, 1), dtype=bool)
 
     def part(self, numerator: FloatArray) -> FloatArray:
-        """Return numerator / |D|^2 with the true D."""
+        """Return numerator / |D|^2 with the true D; nothing passes where p is blocked."""
+        numerator = np.where(self._closed, 0.0, numerator)
         return np.asarray(
             kernels.halved(numerator / self.size, self.state[:, kernels.DECAY], 400.0 * halvings(self.state, self.p))
         )

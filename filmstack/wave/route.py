@@ -21,7 +21,7 @@ from filmstack.wave.media import Ends, Media
 from filmstack.work.pool import run_blocks
 
 if TYPE_CHECKING:
-    from filmstack.arraytypes import FloatArray, IntArray
+    from filmstack.arraytypes import BoolArray, FloatArray, IntArray
 
 Route = Literal["auto", "small", "compiled"]
 _route: ContextVar[Route] = ContextVar("filmstack_route", default="auto")
@@ -115,15 +115,28 @@ def states(group: Group, every_layer: bool = False) -> FloatArray:
     _run(group, np.empty((4, 0, 0)), trace)
     if not group.oblique:
         trace[:, :, 4:8], trace[:, :, kernels.SCALE_P] = trace[:, :, 0:4], trace[:, :, kernels.SCALE_S]
-    if not every_layer:
-        for chosen, cut in _blocked(group):
-            part = states(cut)
-            for row in (4, 5, 6, 7, kernels.SCALE_P):
-                trace[0, chosen[0], row, chosen[1]] = part[0, 0, row]
+    p_rows = np.array([4, 5, 6, 7, kernels.SCALE_P])
+    for (sample, chosen), cut in _blocked(group):
+        part = states(cut, every_layer)
+        for level in range(levels):
+            for row in p_rows:
+                trace[level, sample, row, chosen] = part[level, 0, row] if level < len(part) else 0.0
     return trace
 
 
-def blocking_films(group: Group) -> FloatArray:
+def dark(group: Group) -> BoolArray:
+    """Return where a film of N = 0 lets no p pass, shape (sample, point) or one that broadcasts to it."""
+    if not _may_block(group):
+        return np.zeros((1, 1), dtype=bool)
+    return np.asarray(blocking_films(group).any(axis=1))
+
+
+def _may_block(group: Group) -> bool:
+    empty = (group.media.n[0] == 0.0) & (group.media.n[1] == 0.0)
+    return bool(len(group.order) and np.any(empty) and group.oblique)
+
+
+def blocking_films(group: Group) -> BoolArray:
     """Return True where a film of N = 0 and thickness > 0 meets p at oblique incidence, (sample, layer, point)."""
     empty = (group.media.n[0] == 0.0) & (group.media.n[1] == 0.0) & (group.media.b != 0.0)[:, np.newaxis, :]
     return np.asarray(empty[:, group.order] & (group.thickness > 0.0)[:, :, np.newaxis])
@@ -131,7 +144,7 @@ def blocking_films(group: Group) -> FloatArray:
 
 def _blocked(group: Group) -> Iterator[tuple[tuple[int, IntArray], Group]]:
     """Yield the films in front of the first one that blocks p, for the samples and points it concerns."""
-    if not (np.any((group.media.n[0] == 0.0) & (group.media.n[1] == 0.0)) and group.oblique):
+    if not _may_block(group):
         return
     where = blocking_films(group)
     for sample in range(group.shape[0]):

@@ -12,7 +12,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from filmstack.cli.options import add_options
+from filmstack.cli.options import OPTIONS, add_options
 from filmstack.cli.parser import Options, one_of
 from filmstack.errors import FilmstackError, all_faults
 
@@ -67,6 +67,10 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
         "angle",
         "polarization",
         "side",
+        wavelength={
+            "help": f"{OPTIONS['wavelength']['help']} "
+            f"(default: {SHORTEST:g} to {LONGEST:g} times the reference wavelength)"
+        },
         angle={"help": "angles of incidence in degrees: a list or START:STOP:STEP (default: those of the design)"},
     )
     parser.add_argument(

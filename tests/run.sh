@@ -9,7 +9,7 @@ python="${PYTHON:-python3}"
 environment="$(mktemp -d)"
 trap 'rm -rf "$environment"' EXIT
 
-"$python" -c 'import sys; sys.exit("filmstack needs Python 3.11 or newer: set PYTHON to one" * (sys.version_info < (3, 11)))'
+"$python" -c 'import sys; sys.exit(None if sys.version_info >= (3, 11) else "set PYTHON to a Python 3.11 or newer")'
 "$python" -m venv "$environment"
 "$environment/bin/pip" install --quiet --disable-pip-version-check ".[test]"
 

@@ -41,8 +41,8 @@ def percent_limits(values: FloatArray) -> tuple[float, float]:
 
     Examples
     --------
-    >>> percent_limits(np.array([0.2, 1.3]))
-    (-0.028, 1.4)
+    >>> print("{:.3f} {:.3f}".format(*percent_limits(np.array([0.2, 1.3]))))
+    -0.028 1.400
     """
     finite = values[np.isfinite(values)]
     low, high = float(np.min(finite, initial=100.0)), float(np.max(finite, initial=0.0))

@@ -170,22 +170,20 @@ def test_default_wavelengths_are_told_and_stay_inside_the_data(folder, capsys):
     )
 
 
-@pytest.mark.parametrize("ending", ["png", "svg", "pdf"])
 @pytest.mark.parametrize(
-    "words",
+    ("words", "file", "begin"),
     [
-        "surface.toml --wavelength 400:700:10",
-        "surface.toml --view angle",
-        "surface.toml --view map --wavelength 400:700:50",
-        "surface.toml plate.toml --wavelength 400:700:50 --polarization mean --scale od",
-        "surface.toml --wavelength 600 --angle 0:80:10",
+        ("surface.toml --wavelength 400:700:10", "a.png", b"\x89PNG"),
+        ("surface.toml --view angle", "a.svg", b"<?xml"),
+        ("surface.toml --view map --wavelength 400:700:50", "a.pdf", b"%PDF"),
+        ("surface.toml plate.toml --wavelength 400:700:50 --polarization mean --scale od", "a.PNG", b"\x89PNG"),
+        ("surface.toml --wavelength 600 --angle 0:80:10", "a.png", b"\x89PNG"),
     ],
 )
-def test_pictures(words, ending, folder, capsys):
-    assert spectrum(f"{words} --plot picture.{ending}") == 0
-    assert capsys.readouterr().out.endswith(f"\nwrote picture.{ending}\n")
-    begin = {"png": b"\x89PNG", "svg": b"<?xml", "pdf": b"%PDF"}[ending]
-    assert (folder / f"picture.{ending}").read_bytes().startswith(begin)
+def test_pictures(words, file, begin, folder, capsys):
+    assert spectrum(f"{words} --plot {file}") == 0
+    assert capsys.readouterr().out.endswith(f"\nwrote {file}\n")
+    assert (folder / file).read_bytes().startswith(begin)
 
 
 def test_same_names_are_told_apart_by_file(folder, capsys):

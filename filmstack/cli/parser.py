@@ -32,6 +32,10 @@ class CommandParser(argparse.ArgumentParser):
     def __init__(self, prog: str, description: str) -> None:
         super().__init__(prog=prog, description=description, allow_abbrev=False)
 
+    @property
+    def _command(self) -> str:
+        return self.prog.partition(" ")[2] or self.prog
+
     def error(self, message: str) -> NoReturn:
         """Raise a FilmstackError where argparse would print and exit."""
         option, found, rest = message.removeprefix("argument ").partition(": ")
@@ -40,8 +44,8 @@ class CommandParser(argparse.ArgumentParser):
             raise FilmstackError(option.split("/")[-1], known.get(rest, rest), f"See {self.prog} --help")
         missing = re.fullmatch("the following arguments are required: (.*)", message)
         if missing:
-            raise FilmstackError(self.prog, f"expected {missing[1]}, got none", f"See {self.prog} --help")
-        raise FilmstackError(self.prog, message, f"See {self.prog} --help")
+            raise FilmstackError(self._command, f"expected {missing[1]}, got none", f"See {self.prog} --help")
+        raise FilmstackError(self._command, message, f"See {self.prog} --help")
 
     def parse_args(  # type: ignore[override]
         self, args: Sequence[str] | None = None, namespace: Options | None = None
@@ -54,9 +58,9 @@ class CommandParser(argparse.ArgumentParser):
             if word.startswith("-"):
                 name = word.partition("=")[0]
                 raise FilmstackError(
-                    f"{self.prog}: unknown option {name}", "", nearest(name, known, f"See {self.prog} --help")
+                    f"{self._command}: unknown option {name}", "", nearest(name, known, f"See {self.prog} --help")
                 )
-            raise FilmstackError(f"{self.prog}: unexpected argument {word!r}", "", f"See {self.prog} --help")
+            raise FilmstackError(f"{self._command}: unexpected argument {word!r}", "", f"See {self.prog} --help")
         return options
 
 

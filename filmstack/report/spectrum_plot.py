@@ -45,6 +45,7 @@ Scale: TypeAlias = Literal["percent", "od"]
 QUANTITIES = {"T": "transmittance T", "R": "reflectance R", "A": "absorptance A"}
 POLARIZATIONS = {"_s": "s", "_p": "p", "": "mean of s and p"}
 _ROUND_PERCENT = (0.1, 0.2, 0.5, 1, 2, 5, 10, 20, 50, 80, 90, 95, 98, 99, 99.5, 99.9)
+_MOST_CROSSINGS = 9  # of lines on a map, along a row
 _ROUND_DENSITIES = (0.5, 1, 2, 3, 4, 5, 6, 8, 10, 15, 20)
 LEAST_DRAWN_ABSORPTANCE = 5e-4
 """Below this A is left out: on an axis in percent it would be a line at zero."""
@@ -255,7 +256,10 @@ def _round_levels(grids: Sequence[FloatArray], density: bool) -> FloatArray:
         return np.empty(0)
     steps = np.array(_ROUND_DENSITIES if density else _ROUND_PERCENT)
     wanted = np.quantile(values, (0.15, 0.4, 0.65, 0.88))
-    return np.unique(steps[np.argmin(np.abs(steps[:, np.newaxis] - wanted), axis=0)])
+    levels = np.unique(steps[np.argmin(np.abs(steps[:, np.newaxis] - wanted), axis=0)])
+    crossings = [sum(np.mean(np.sum(np.diff(grid > level), axis=1)) for grid in grids) / len(grids) for level in levels]
+    order = np.argsort(crossings, kind="stable")  # a forest of lines hides the map: the plainest first
+    return np.sort(levels[order][np.cumsum(np.array(crossings)[order]) <= _MOST_CROSSINGS])
 
 
 def _contours(axes: Axes, wavelength: FloatArray, angle: FloatArray, grid: FloatArray, levels: FloatArray) -> None:

@@ -42,6 +42,24 @@ class Provenance:
     """Warnings and assumptions, in words (residual absorption, k taken as 0, radioactive ...)."""
 
 
+@dataclass(frozen=True, kw_only=True)
+class Thermal:
+    """How a medium changes with temperature, where a source gives it."""
+
+    dn_dt_per_k: float
+    """Change of n with temperature, near `reference_c`. [1/K]"""
+    reference_c: float
+    """Temperature of the index data. [deg C]"""
+    range_c: tuple[float, float]
+    """Temperatures in which dn/dT holds. [deg C]"""
+    range_nm: tuple[float, float]
+    """Vacuum wavelengths in which dn/dT holds. [nm]"""
+    expansion_per_k: float
+    """Linear expansion. [1/K]"""
+    source: str
+    """Where the numbers come from."""
+
+
 class Material(ABC):
     """A homogeneous isotropic medium N(lambda) = n - ik.
 
@@ -51,6 +69,7 @@ class Material(ABC):
     def __init__(self, provenance: Provenance, *, allow_gain: bool = False) -> None:
         self.provenance = provenance
         self.allow_gain = allow_gain
+        self.thermal: Thermal | None = None
 
     @property
     def key(self) -> str:
@@ -98,7 +117,9 @@ class Material(ABC):
             If a wavelength or the temperature lies outside the data.
         """
         wavelength = self._checked(wavelength_nm)
-        return np.asarray(self._index(wavelength, temperature_c), dtype=complex).reshape(wavelength.shape)
+        n: ComplexArray = np.asarray(self._index(wavelength, temperature_c), dtype=complex).reshape(wavelength.shape)
+        change = self._thermal_change(wavelength, temperature_c)
+        return np.asarray(n + change, dtype=complex)
 
     def index_derivatives(
         self, wavelength_nm: ArrayLike, order: int, temperature_c: float | None = None
@@ -127,11 +148,11 @@ class Material(ABC):
             If a wavelength or the temperature lies outside the data.
         """
         if not 0 <= order <= self.derivative_order:
-            raise ArgumentError(
-                f"order: {self.label}: expected 0 to {self.derivative_order} derivatives, got {order}"
-            )
+            raise ArgumentError(f"order: {self.label}: expected 0 to {self.derivative_order} derivatives, got {order}")
         wavelength = self._checked(wavelength_nm)
-        return np.asarray(self._index_derivatives(wavelength, order, temperature_c), dtype=complex)
+        rows = np.array(self._index_derivatives(wavelength, order, temperature_c), dtype=complex)
+        rows[0] += self._thermal_change(wavelength, temperature_c)
+        return rows
 
     def _checked(self, wavelength_nm: ArrayLike) -> FloatArray:
         wavelength = np.asarray(wavelength_nm, dtype=float)
@@ -147,6 +168,30 @@ class Material(ABC):
                 "Narrow the wavelengths or choose another source of this material",
             )
         return wavelength
+
+    def _thermal_change(self, wavelength_nm: FloatArray, temperature_c: float | None) -> float:
+        """Return what dn/dT adds to n; media with a temperature of their own override this with 0."""
+        if temperature_c is None:
+            return 0.0
+        if self.thermal is None:
+            raise MaterialRangeError(
+                self.label, f"expected no temperature, got {temperature_c:g} deg C", "The source gives no dn/dT"
+            )
+        thermal = self.thermal
+        low, high = thermal.range_c
+        if not low <= temperature_c <= high:
+            raise MaterialRangeError(
+                self.label, f"expected a temperature from {low:g} to {high:g} deg C, got {temperature_c:g} deg C"
+            )
+        outside = (wavelength_nm < thermal.range_nm[0]) | (wavelength_nm > thermal.range_nm[1])
+        if np.any(outside):
+            raise MaterialRangeError(
+                self.label,
+                f"dn/dT is known from {thermal.range_nm[0]:g} to {thermal.range_nm[1]:g} nm, "
+                f"got {wavelength_nm[outside].flat[0]:g} nm",
+                "Narrow the wavelengths or leave the temperature out",
+            )
+        return thermal.dn_dt_per_k * (temperature_c - thermal.reference_c)
 
     @abstractmethod
     def _index(self, wavelength_nm: FloatArray, temperature_c: float | None) -> ComplexArray:

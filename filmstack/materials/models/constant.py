@@ -20,12 +20,16 @@ class Constant(Material):
         super().__init__(provenance, allow_gain=allow_gain)
         self.n, self.k = n, k
 
+    def _thermal_change(self, wavelength_nm: FloatArray, temperature_c: float | None) -> float:
+        """Return 0: a constant has no temperature."""
+        return 0.0
+
     def _index(self, wavelength_nm: FloatArray, temperature_c: float | None) -> ComplexArray:
-        return np.full(wavelength_nm.shape, complex(self.n, -self.k))
+        return np.full(wavelength_nm.shape, complex(self.n, 0.0 - self.k))
 
     def _index_derivatives(self, wavelength_nm: FloatArray, order: int, temperature_c: float | None) -> ComplexArray:
         rows = np.zeros((order + 1, *wavelength_nm.shape), dtype=complex)
-        rows[0] = complex(self.n, -self.k)
+        rows[0] = complex(self.n, 0.0 - self.k)
         return rows
 
 
@@ -57,6 +61,8 @@ def constant(n: float, k: float = 0.0, allow_gain: bool = False) -> Material:
     if not (np.isfinite(n) and n >= 0.0):
         raise ArgumentError(f"n: expected a finite index >= 0, got {n:g}")
     if not np.isfinite(k) or (k < 0.0 and not allow_gain):
-        raise ArgumentError(f"k: expected a finite extinction coefficient >= 0, got {k:g}. Pass allow_gain=True for gain")
+        raise ArgumentError(
+            f"k: expected a finite extinction coefficient >= 0, got {k:g}. Pass allow_gain=True for a medium with gain"
+        )
     text = f"{n:g}" if k == 0.0 else f"{n:g} - {k:g}i" if k > 0.0 else f"{n:g} + {-k:g}i"
     return Constant(n, k, Provenance(key=f"constant {text}", label=f"constant index {text}"), allow_gain=allow_gain)

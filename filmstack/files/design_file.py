@@ -6,7 +6,7 @@ A TOML file -> `read_design_file` -> `DesignFile` of checked plain values -> `fi
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
@@ -390,6 +390,65 @@ def _inner_materials(entries: object, where: str, right: Any) -> Iterator[tuple[
         if isinstance(entry, dict):
             yield from right(entry.get("material"), f"{where}[{number}].material")
             yield from _inner_materials(entry.get("layers"), f"{where}[{number}].layers", right)
+
+
+def with_materials(values: Mapping[str, Any], change: Callable[[Any], Any]) -> dict[str, Any]:
+    """Return values of a design file with every material changed.
+
+    Parameters
+    ----------
+    values : mapping
+        Checked values.
+    change : callable
+        From a material as written to another.
+
+    Returns
+    -------
+    dict
+    """
+    changed = dict(values)
+    for name in ("incident", "substrate", "exit"):
+        changed |= {name: change(values[name])} if name in values else {}
+    if "materials" in values:
+        changed["materials"] = {name: change(value) for name, value in values["materials"].items()}
+    if "letters" in values:
+        letters = values["letters"].items()
+        changed["letters"] = {name: {**letter, "material": change(letter["material"])} for name, letter in letters}
+    for side in _SIDES:
+        changed |= {side: _changed_entries(values[side], change)} if side in values else {}
+    return changed
+
+
+def _changed_entries(entries: Sequence[Mapping[str, Any]], change: Callable[[Any], Any]) -> list[dict[str, Any]]:
+    return [
+        {**entry, "layers": _changed_entries(entry["layers"], change)}
+        if "layers" in entry
+        else {**entry, "material": change(entry["material"])}
+        if "material" in entry
+        else dict(entry)
+        for entry in entries
+    ]
+
+
+def in_order(values: Mapping[str, Any]) -> dict[str, Any]:
+    """Return values of a design file in the order of `DESIGN`, without letters that no sequence uses.
+
+    Parameters
+    ----------
+    values : mapping
+        Checked values.
+
+    Returns
+    -------
+    dict
+    """
+    used = {letter for _, text in _sequences(values) for letter in letters_of(parse_sequence(text))}
+    ordered = {key.name: values[key.name] for key in DESIGN.keys if key.name in values}
+    letters = {name: letter for name, letter in values.get("letters", {}).items() if name in used}
+    ordered |= {"letters": letters} if letters else {}
+    if not letters:
+        ordered.pop("letters", None)
+    return ordered
 
 
 def help_text() -> str:

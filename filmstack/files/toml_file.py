@@ -147,11 +147,14 @@ def _lines(table: Mapping[str, Any]) -> list[str]:
     return [f"{_key(key)} = {_value(value)}" for key, value in table.items()]
 
 
-def _value(value: object) -> str:
+def _value(value: object, indent: str = "") -> str:
+    """Return the text of a value; a list of tables has a line each, tables in them too."""
     if isinstance(value, Mapping):
-        return f"{{ {', '.join(_lines(value))} }}" if value else "{}"
+        inner = [f"{_key(key)} = {_value(item, indent)}" for key, item in value.items()]
+        return f"{{ {', '.join(inner)} }}" if inner else "{}"
     if isinstance(value, list) and any(isinstance(item, Mapping) for item in value):
-        return "[\n" + "".join(f"    {_value(item)},\n".replace("\n        ", "\n            ") for item in value) + "]"
+        deeper = f"{indent}    "
+        return "[\n" + "".join(f"{deeper}{_value(item, deeper)},\n" for item in value) + f"{indent}]"
     if isinstance(value, list):
         return f"[{', '.join(map(_value, value))}]"
     import tomli_w

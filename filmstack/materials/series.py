@@ -167,15 +167,28 @@ def log_size(x: Number) -> Number:
 
 
 def faddeeva(z: Number) -> Number:
-    """Return w(z) = exp(-z^2) erfc(-iz), by w' = -2 z w + 2i / sqrt(pi)."""
+    """Return w(z) = exp(-z^2) erfc(-iz) for Im z >= 0.
+
+    Derivatives follow w' = -2 z w + 2i / sqrt(pi), which cancels far from 0; there they follow Laplace's
+    continued fraction (Abramowitz and Stegun 7.1.15).
+    """
     from scipy.special import wofz
 
     if not isinstance(z, Series):
         return wofz(z)
+    far = np.abs(z.c[0]) > _FAR
+    near_z, far_z = where(far, z._like(0.0), z), where(far, z, z._like(2.0 * _FAR * 1j))
     constant = 2j / np.sqrt(np.pi)
 
     def slope(y: Series, i: int) -> AnyArray:
-        product = sum(z.c[m] * y.c[i - m] for m in range(i + 1))
+        product = sum(near_z.c[m] * y.c[i - m] for m in range(i + 1))
         return np.asarray(-2.0 * product + (constant if i == 0 else 0.0))
 
-    return _by_equation(z, wofz(z.c[0]), slope)
+    near = _by_equation(near_z, wofz(near_z.c[0]), slope)
+    fraction = far_z
+    for level in range(_LEVELS, 0, -1):
+        fraction = far_z - 0.5 * level / fraction
+    return where(far, (1j / np.sqrt(np.pi)) / fraction, near)
+
+
+_FAR, _LEVELS = 7.0, 24

@@ -60,7 +60,7 @@ class Bruggeman(Mixture):
             product = np.array([-1.0, own]) * share
             for j, other in enumerate(e):
                 if j != i:
-                    product = np.polymul(product, [2.0, other])
+                    product = np.convolve(product, [2.0, other])
             total = total + product
         roots = np.roots(total)
         size = np.max(np.abs(e))

@@ -112,6 +112,13 @@ class Design:
             dtype=float,
         )
 
+    @property
+    def parent_name(self) -> str:
+        """File of the design that this one was made from, or an empty text."""
+        if self.parent:
+            return str(self.parent)
+        return str(self.written.values.get("parent", "")) if self.written else ""
+
     def _wavenumber(self, material: Material, incident: Material) -> float:
         return normal_wavenumber(material, incident, self.reference_wavelength_nm, self.reference_angle_deg)
 
@@ -363,6 +370,11 @@ def _name_of(material: Material) -> Any:  # noqa: ANN401 - a text or table
     return material.key
 
 
+def _identity(value: str | dict[str, float]) -> str:
+    """Return a text that is the same for all ways to write the same material."""
+    return value if isinstance(value, str) else json.dumps([float(value["n"]), float(value.get("k", 0.0))])
+
+
 class _Media:
     """The materials of a file: from what is written to `Material`, each made once."""
 
@@ -373,7 +385,7 @@ class _Media:
         self._own: Mapping[str, Any] = own if isinstance(own, dict) else {}
         seen: set[str] = set()
         for place, value in material_places(file.written):
-            name = json.dumps(value)
+            name = _identity(value)
             if name not in seen and not (isinstance(value, str) and value in self._own):
                 seen.add(name)
                 self._resolve(place, value)
@@ -382,7 +394,7 @@ class _Media:
         """Return the material of a value that was read without a fault."""
         if isinstance(value, str) and value in self._own:
             value = self._own[value]
-        return self._known[json.dumps(value)]
+        return self._known[_identity(value)]
 
     def check_reference(self) -> None:
         """Note each material whose data do not hold at the reference wavelength."""
@@ -400,7 +412,7 @@ class _Media:
 
     def _resolve(self, place: str, value: str | dict[str, float]) -> None:
         try:
-            self._known[json.dumps(value)] = self._made(value)
+            self._known[_identity(value)] = self._made(value)
         except (MaterialNotFoundError, MaterialFileError) as error:
             fault = type(error)(f"{self.faults.file}: {place}: {error.where}", error.problem, error.advice)
             self.faults.found.append(fault)
@@ -430,7 +442,7 @@ def _films(values: Mapping[str, Any], side: str, media: _Media) -> list[Layer]:
     made: dict[Piece, Layer] = {}
     films = []
     for piece in pieces:
-        key = replace(piece, material=json.dumps(piece.material))
+        key = replace(piece, material=_identity(piece.material))
         if key not in made:
             made[key] = _film(piece, values, media)
         films.append(made[key])

@@ -116,7 +116,7 @@ def _help() -> str:
 
 
 def _unknown(word: str) -> FilmstackError:
-    from filmstack.cli.parser import nearest
+    from filmstack.files.hints import nearest
 
     if word.startswith("-"):
         return FilmstackError(

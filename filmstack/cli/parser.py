@@ -8,11 +8,11 @@ from __future__ import annotations
 
 import argparse
 import re
-from collections.abc import Callable, Iterable, Sequence
-from difflib import get_close_matches
+from collections.abc import Callable, Sequence
 from typing import NoReturn, TypeAlias
 
 from filmstack.errors import FilmstackError
+from filmstack.files.hints import nearest
 
 Options: TypeAlias = argparse.Namespace
 """What a command's `run` gets: one attribute an argument."""
@@ -62,34 +62,6 @@ class CommandParser(argparse.ArgumentParser):
                 )
             raise FilmstackError(f"{self._command}: unexpected argument {word!r}", "", f"See {self.prog} --help")
         return options
-
-
-def nearest(word: str, known: Iterable[str], otherwise: str) -> str:
-    """Return "Did you mean X?" for the known name nearest to `word`, or what to say if none is near.
-
-    Parameters
-    ----------
-    word : str
-        What was found.
-    known : iterable of str
-        What could have been meant.
-    otherwise : str
-        Advice if no known name is near.
-
-    Returns
-    -------
-    str
-        Advice for an error message.
-
-    Examples
-    --------
-    >>> nearest("spectum", ["show", "spectrum"], "See the list")
-    'Did you mean spectrum?'
-    >>> nearest("xyz", ["show", "spectrum"], "See the list")
-    'See the list'
-    """
-    close = get_close_matches(word, list(known), n=1)
-    return f"Did you mean {close[0]}?" if close else otherwise
 
 
 def one_of(option: str, *choices: str) -> Callable[[str], str]:

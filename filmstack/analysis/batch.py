@@ -14,7 +14,7 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 
 from filmstack.analysis.points import Request, incident_note, request
-from filmstack.analysis.solution import Solution, solve
+from filmstack.analysis.solution import Solution, log10_of_mean, solve
 from filmstack.errors import ArgumentError, CoherenceError
 from filmstack.materials.material import Material
 
@@ -75,7 +75,7 @@ class BatchSpectrum:
             return values[name]
         if f"{name}_s" in values and name not in _AMPLITUDES:
             s, p = values[f"{name}_s"], values[f"{name}_p"]
-            return np.log10(0.5 * (10.0**s + 10.0**p)) if name == "log10_T" else 0.5 * (s + p)
+            return log10_of_mean(s, p) if name == "log10_T" else 0.5 * (s + p)
         raise AttributeError(f"{name!r} was not asked for; this batch holds {', '.join(values)}")
 
     def to_frame(self) -> pd.DataFrame:

@@ -13,7 +13,7 @@ from typing import TYPE_CHECKING, Protocol
 import numpy as np
 
 from filmstack.analysis.points import Request
-from filmstack.errors import CoherenceError
+from filmstack.errors import ArgumentError, CoherenceError
 from filmstack.wave.absorption import absorbed
 from filmstack.wave.finish import Front, as_complex
 from filmstack.wave.plates import Crossing, PlateChain
@@ -132,7 +132,12 @@ class Incoherent:
             )
             plates = self.request.stack.plates
             media = tuple((self.request.at_points(plate.material), plate.thickness_mm * 1e6) for plate in plates)
-            self._chains[p] = PlateChain(crossings, media, self.request.k0)
+            chain = PlateChain(crossings, media, self.request.k0)
+            if any(np.any(gap < 0.0) for gap in chain.solved[2]):
+                raise ArgumentError(
+                    "stack: the gain between its plates exceeds the loss: light builds up without end. Lower the gain"
+                )
+            self._chains[p] = chain
         return self._chains[p]
 
     @cached_property
@@ -180,6 +185,14 @@ class Incoherent:
         raise CoherenceError(
             "t: a stack with a thick plate has no amplitude transmittance. Ask for T, or drop the plate"
         )
+
+
+def log10_of_mean(a: FloatArray, b: FloatArray) -> FloatArray:
+    """Return log10 of the mean of two values given by their log10, below the smallest double too."""
+    high, low = np.maximum(a, b), np.minimum(a, b)
+    with np.errstate(invalid="ignore"):
+        ratio = np.where(np.isneginf(high), 0.0, low - high)
+    return np.asarray(high + np.log10(0.5 * (1.0 + 10.0**ratio)))
 
 
 def solve(request: Request) -> Solution:

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from filmstack.analysis.points import Request, request
-from filmstack.analysis.solution import Solution, solve
+from filmstack.analysis.solution import Solution, log10_of_mean, solve
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -147,10 +147,7 @@ class Spectrum:
     @property
     def log10_T(self) -> FloatArray:
         """log10 of the mean T of s and p. [1]"""
-        high, low = np.maximum(self.log10_T_s, self.log10_T_p), np.minimum(self.log10_T_s, self.log10_T_p)
-        with np.errstate(invalid="ignore"):
-            ratio = np.where(np.isneginf(high), 0.0, low - high)
-        return np.asarray(high + np.log10(0.5 * (1.0 + 10.0**ratio)))
+        return log10_of_mean(self.log10_T_s, self.log10_T_p)
 
     @cached_property
     def r_s(self) -> ComplexArray:

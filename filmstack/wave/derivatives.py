@@ -69,7 +69,7 @@ class Passes:
         front = self.front(p)
         k0 = self.group.media.k0 * np.ones_like(front.size)
         a1, a2 = self.group.ends.incident_pair(p)
-        d = front.waves[0]
+        d = (np.where(front.grazing, 1.0, front.waves[0][0]), np.where(front.grazing, 0.0, front.waves[0][1]))
         product = times(a1, a2)
         nothing = np.zeros_like(k0)
         quadratic = over((2.0 * k0 * product[1], -2.0 * k0 * product[0]), times(d, d))
@@ -108,6 +108,8 @@ class Passes:
         """
         group = self.group
         layers, points = len(group.order), group.shape[1]
+        if not layers:
+            return np.empty((4 if powers else 8, 0, points))
         with np.errstate(divide="ignore", invalid="ignore"):
             front = np.stack(self._rows(False, powers) + self._rows(True, powers))
         media = self.media_rows(group.media)

@@ -75,9 +75,9 @@ class Front:
 
     @property
     def grazing(self) -> BoolArray:
-        """True where light meets the stack at exactly 90 degrees."""
+        """True where light grazes the stack: at exactly 90 degrees, or with no wave towards it at all."""
         cosine = self.ends.cosine
-        return np.broadcast_to(np.False_ if cosine is None else cosine == 0.0, self.size.shape)
+        return np.asarray((self.size == 0.0) | (np.False_ if cosine is None else cosine == 0.0))
 
     @cached_property
     def r(self) -> Pair:
@@ -99,7 +99,7 @@ class Front:
     @cached_property
     def log10_size(self) -> FloatArray:
         """log10 of the true |a1 E + a2 H|^2, beyond the range of doubles too."""
-        stored = np.log10(self.size) + LOG10_E * self.state[:, kernels.DECAY]
+        stored = np.log10(np.where(self.size == 0.0, 1.0, self.size)) + LOG10_E * self.state[:, kernels.DECAY]
         return np.asarray(stored + 400.0 * LOG10_2 * halvings(self.state, self.p))
 
     @property
@@ -114,7 +114,7 @@ class Front:
 
     def part(self, numerator: FloatArray) -> FloatArray:
         """Return numerator / |D|^2 with the true D; nothing passes where p is blocked."""
-        numerator = np.where(self._closed, 0.0, numerator)
-        return np.asarray(
-            kernels.halved(numerator / self.size, self.state[:, kernels.DECAY], 400.0 * halvings(self.state, self.p))
-        )
+        numerator = np.where(self._closed | self.grazing, 0.0, numerator)
+        size = np.where(self.grazing, 1.0, self.size)
+        count = 400.0 * halvings(self.state, self.p)
+        return np.asarray(kernels.halved(numerator / size, self.state[:, kernels.DECAY], count))

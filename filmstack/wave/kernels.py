@@ -332,7 +332,7 @@ def powers(a1: Any, a2: Any, flux: Any, closed: Any, er: Any, hi: Any, hr: Any, 
     """Return R and T of one polarization from the fields at the first interface."""
     dr, di = a1 * er + a2 * hr, a1 * ei + a2 * hi
     nr, ni = a1 * er - a2 * hr, a1 * ei - a2 * hi
-    size = dr * dr + di * di
+    size = (dr * dr + di * di) * (1.0 - closed) + closed
     reflectance = (nr * nr + ni * ni) / size
     return reflectance * (1.0 - closed) + closed, halved(flux / size, y, 400.0 * n)
 

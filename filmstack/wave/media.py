@@ -33,7 +33,7 @@ def over(a: Pair, b: Pair) -> Pair:
 
 
 def normal_wavenumber(n: Pair, b: FloatArray) -> tuple[Pair, Pair]:
-    """Return kappa and kappa^2, the root with Im kappa <= 0; kappa is N itself where b = 0."""
+    """Return kappa and kappa^2, the root with Im kappa <= 0; kappa is +-N itself where b = 0."""
     nr, ni = n
     x = (nr - b) * (nr + b) - ni * ni
     y = 2.0 * nr * ni
@@ -45,7 +45,7 @@ def normal_wavenumber(n: Pair, b: FloatArray) -> tuple[Pair, Pair]:
     im = -np.where(x >= 0.0, smaller, larger)
     re = np.where(y > 0.0, -re, re)
     straight = b == 0.0
-    return (np.where(straight, nr, re), np.where(straight, ni, im)), (x, y)
+    return (np.where(straight, np.where(ni > 0.0, -nr, nr), re), np.where(straight, -np.abs(ni), im)), (x, y)
 
 
 @dataclass(frozen=True)

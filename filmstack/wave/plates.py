@@ -97,9 +97,14 @@ class PlateChain:
 
     @cached_property
     def decays(self) -> list[FloatArray]:
-        """Exponent y of each plate."""
+        """Exponent y of each plate; infinite where its wave is evanescent without loss and carries no power."""
         b = self.groups[0].front.ends.b
-        return [-2.0 * self.k0 * thickness * normal_wavenumber(n, b)[0][1] for n, thickness in self.plates]
+        rows = []
+        for n, thickness in self.plates:
+            kappa = normal_wavenumber(n, b)[0]
+            powerless = (n[1] == 0.0) & (kappa[0] == 0.0)
+            rows.append(np.where(powerless, np.inf, -2.0 * self.k0 * thickness * kappa[1]))
+        return rows
 
     @cached_property
     def solved(self) -> tuple[list[FloatArray], list[FloatArray], list[FloatArray]]:
@@ -117,6 +122,8 @@ class PlateChain:
             gap = np.where(
                 exact, group.back_flux + group.back_reflectance * deficit, 1.0 - group.back_reflectance * load
             )
+            # Light that no wave can reach may be caught for ever: it takes no part.
+            gap = np.where(group.transmitted == 0.0, 1.0, gap)
             with np.errstate(divide="ignore", invalid="ignore"):
                 ratio = group.reflectance + group.transmitted * group.back_transmitted * load / gap
                 passed = np.where(exact, group.back_flux * deficit / gap, 1.0 - ratio)
@@ -221,7 +228,8 @@ class PlateChain:
         """Return A of each plate, the standing-wave cross term included, shape (plate, sample, point)."""
         rows = []
         for place, (n, _) in enumerate(self.plates):
-            y = over(*self.groups[place].back.ends.incident_pair(self.p))
+            with np.errstate(divide="ignore", invalid="ignore"):  # p at kappa = 0: lossless, set to 0 below
+                y = over(*self.groups[place].back.ends.incident_pair(self.p))
             fade = self.decays[place]
             f0, fd = self.forward[place][1], self.forward[place + 1][0]
             bd = self.solved[0][place + 1] * fd

@@ -1,0 +1,239 @@
+"""Curves through tabulated constants over photon energy: table rows -> here -> `tables`.
+
+n follows a smoothing spline that stays within the printed rounding of the rows, so that its
+derivatives do not follow the rounding; k follows a shape-preserving cubic, never below zero.
+Evaluation is plain numpy; only the fit of a spline imports scipy.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Protocol
+
+import numpy as np
+
+if TYPE_CHECKING:
+    from filmstack.arraytypes import FloatArray
+
+
+class Curve(Protocol):
+    """A function of photon energy with derivatives."""
+
+    @property
+    def derivative_order(self) -> int:
+        """Highest continuous derivative."""
+
+    def derivative(self, x: FloatArray, order: int) -> FloatArray:
+        """Return the derivative of a given order; order 0 is the value."""
+
+
+@dataclass(frozen=True, eq=False)
+class SplineCurve:
+    """A spline as knots and B-spline coefficients.
+
+    Parameters
+    ----------
+    knots, coefficients : ndarray
+        As in the textbooks: `degree` + 1 equal knots at each end, one coefficient a B-spline.
+    """
+
+    knots: FloatArray
+    coefficients: FloatArray
+
+    @property
+    def degree(self) -> int:
+        """Degree of the pieces."""
+        return len(self.knots) - len(self.coefficients) - 1
+
+    @property
+    def derivative_order(self) -> int:
+        """Highest continuous derivative."""
+        return self.degree - 1
+
+    def derivative(self, x: FloatArray, order: int) -> FloatArray:
+        """Return the derivative of a given order by de Boor's recursion (A Practical Guide to Splines, chapter X)."""
+        degree, knots, c = self.degree, self.knots, self.coefficients
+        if order > degree:
+            return np.zeros(np.shape(x))
+        for _ in range(order):
+            knots, width = knots[1:-1], knots[degree + 1 : -1] - knots[1 : -degree - 1]
+            c = degree * np.diff(c) / width
+            degree -= 1
+        return _de_boor(knots, c, degree, np.asarray(x, dtype=float))
+
+
+def _de_boor(knots: FloatArray, c: FloatArray, degree: int, x: FloatArray) -> FloatArray:
+    last = len(knots) - degree - 2
+    piece = np.clip(np.searchsorted(knots, x, side="right") - 1, degree, last)
+    values = [c[piece - degree + j] for j in range(degree + 1)]
+    for level in range(1, degree + 1):
+        for j in range(degree, level - 1, -1):
+            left, right = knots[piece + j - degree], knots[piece + j + 1 - level]
+            share = (x - left) / (right - left)
+            values[j] = (1.0 - share) * values[j - 1] + share * values[j]
+    return np.asarray(values[degree])
+
+
+@dataclass(frozen=True, eq=False)
+class MonotoneCurve:
+    """A cubic that keeps the shape of its points: no new extrema, no overshoot.
+
+    F. N. Fritsch and J. Butland, SIAM J. Sci. Stat. Comput. 5, 300 (1984): weighted harmonic
+    means of the slopes, zero where they change sign.
+    """
+
+    x: FloatArray
+    y: FloatArray
+    slopes: FloatArray
+
+    @property
+    def derivative_order(self) -> int:
+        """Highest continuous derivative."""
+        return 1
+
+    def derivative(self, x: FloatArray, order: int) -> FloatArray:
+        """Return the derivative of a given order; the second and third are piecewise."""
+        x = np.asarray(x, dtype=float)
+        if order > 3:
+            return np.zeros(x.shape)
+        i = np.clip(np.searchsorted(self.x, x, side="right") - 1, 0, len(self.x) - 2)
+        h = self.x[i + 1] - self.x[i]
+        rise, d0, d1 = (self.y[i + 1] - self.y[i]) / h, self.slopes[i], self.slopes[i + 1]
+        second, third = (3.0 * rise - 2.0 * d0 - d1) / h, (d0 + d1 - 2.0 * rise) / (h * h)
+        u = x - self.x[i]
+        if order == 0:
+            value = self.y[i] + u * (d0 + u * (second + u * third))
+            low, high = np.minimum(self.y[i], self.y[i + 1]), np.maximum(self.y[i], self.y[i + 1])
+            return np.clip(value, low, high)  # a rounding error below zero would be gain
+        if order == 1:
+            return d0 + u * (2.0 * second + 3.0 * u * third)
+        return 2.0 * second + 6.0 * u * third if order == 2 else 6.0 * third
+
+
+def monotone_curve(x: FloatArray, y: FloatArray) -> MonotoneCurve:
+    """Return the shape-preserving cubic through points.
+
+    Parameters
+    ----------
+    x, y : ndarray of float, shape (points,)
+        At least two points, x increasing.
+
+    Returns
+    -------
+    MonotoneCurve
+    """
+    h = np.diff(x)
+    rise = np.diff(y) / h
+    if len(x) == 2:
+        return MonotoneCurve(x, y, np.repeat(rise, 2))
+    first, second = 2.0 * h[1:] + h[:-1], h[1:] + 2.0 * h[:-1]
+    same = rise[1:] * rise[:-1] > 0.0
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
+        inner = np.where(same, (first + second) / (first / rise[:-1] + second / rise[1:]), 0.0)
+    ends = [_end_slope(h[0], h[1], rise[0], rise[1]), _end_slope(h[-1], h[-2], rise[-1], rise[-2])]
+    return MonotoneCurve(x, y, np.concatenate([ends[:1], inner, ends[1:]]))
+
+
+def _end_slope(h0: float, h1: float, rise0: float, rise1: float) -> float:
+    """Return the one-sided three-point slope, held within the shape of the points."""
+    slope = ((2.0 * h0 + h1) * rise0 - h0 * rise1) / (h0 + h1)
+    if slope * rise0 <= 0.0:
+        return 0.0
+    return 3.0 * rise0 if rise0 * rise1 <= 0.0 and abs(slope) > abs(3.0 * rise0) else slope
+
+
+def fit_curve(x: FloatArray, y: FloatArray, tolerance: FloatArray) -> Curve:
+    """Return the smoothest curve that passes every row within its tolerance.
+
+    Parameters
+    ----------
+    x, y : ndarray of float, shape (points,)
+        Photon energy, increasing [eV], and n [1].
+    tolerance : ndarray of float, shape (points,)
+        Half a unit of the last printed digit of each row. [1]
+
+    Returns
+    -------
+    Curve
+        A quintic spline; a cubic one, or the monotone cubic, where a smoother one would leave the
+        shape of the rows (few rows, sharp features, noise above the printed digits).
+    """
+    shape = monotone_curve(x, y)
+    for degree in (5, 3):
+        if len(x) > degree + 1:
+            curve = _smoothest(x, y, tolerance, degree)
+            if curve is not None and _keeps_shape(curve, shape, tolerance):
+                return curve
+    return shape
+
+
+def _smoothest(x: FloatArray, y: FloatArray, tolerance: FloatArray, degree: int) -> SplineCurve | None:
+    """Return the spline of fewest knots within the tolerance, by bisection of its sum of squares."""
+    best, low, high = None, -6.0, np.log10(len(x))  # of the sum of (residual / tolerance)^2
+    for _ in range(9):
+        middle = 0.5 * (low + high)
+        curve = _smoothed(x, y, tolerance, degree, 10.0**middle)
+        if curve is not None and np.all(np.abs(curve.derivative(x, 0) - y) <= tolerance):
+            best, low = curve, middle
+        else:
+            high = middle
+    return best or _smoothed(x, y, tolerance, degree, 0.0)
+
+
+def _smoothed(x: FloatArray, y: FloatArray, tolerance: FloatArray, degree: int, s: float) -> SplineCurve | None:
+    import warnings
+
+    from scipy.interpolate import splrep
+
+    with warnings.catch_warnings():
+        warnings.simplefilter("ignore")  # a failed fit shows in its residuals
+        knots, c, _ = splrep(x, y, w=1.0 / tolerance, k=degree, s=s)
+    if not np.all(np.isfinite(c)):
+        return None
+    return SplineCurve(np.asarray(knots), np.asarray(c[: len(knots) - degree - 1]))
+
+
+def _keeps_shape(curve: Curve, shape: MonotoneCurve, tolerance: FloatArray) -> bool:
+    """Judge whether a spline strays from the rows between them: by a quarter of what they change nearby."""
+    x, y = shape.x, shape.y
+    between = (x[:-1, np.newaxis] + np.diff(x)[:, np.newaxis] * np.array([0.25, 0.5, 0.75])).ravel()
+    change = np.abs(np.diff(y))
+    nearby = np.maximum(change, np.maximum(np.append(change[1:], 0.0), np.append(0.0, change[:-1])))
+    allowed = np.repeat(0.25 * nearby + 2.0 * np.maximum(tolerance[1:], tolerance[:-1]), 3)
+    value = curve.derivative(between, 0)
+    return bool(np.all(np.abs(value - shape.derivative(between, 0)) <= allowed) and np.all(value >= 0.0))
+
+
+def derivative_deviation(
+    curve: SplineCurve, x: FloatArray, tolerance: FloatArray, at: FloatArray, order: int
+) -> FloatArray:
+    """Return the standard deviation that the rounding of the rows gives to a derivative of the spline.
+
+    Parameters
+    ----------
+    curve : SplineCurve
+        Fitted curve.
+    x, tolerance : ndarray of float, shape (points,)
+        Photon energies of the rows [eV] and half a unit of their last digit [1].
+    at : ndarray of float, shape (values,)
+        Photon energies wanted. [eV]
+    order : int
+        Order of the derivative.
+
+    Returns
+    -------
+    ndarray of float, shape (values,)
+        Standard deviation. [1/eV^order]
+
+    Notes
+    -----
+    A rounding error is even over +- the tolerance; its variance, tolerance^2 / 3, is carried through the
+    least-squares spline on the same knots. What the spline misses between rows is not included.
+    """
+    from scipy.interpolate import BSpline
+
+    weighted = BSpline.design_matrix(x, curve.knots, curve.degree).toarray() * (np.sqrt(3.0) / tolerance)[:, np.newaxis]
+    identity = np.eye(len(curve.coefficients))
+    rows = np.stack([SplineCurve(curve.knots, one).derivative(at, order) for one in identity], axis=-1)
+    triangle: FloatArray = np.linalg.qr(weighted).R
+    return np.asarray(np.linalg.norm(np.linalg.solve(triangle.T, rows.T), axis=0))

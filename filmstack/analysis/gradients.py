@@ -452,9 +452,8 @@ def needle_gradient(
         thickness=cut.thickness_nm[np.newaxis],
         index=dict(asked.index) | {material: material.index(asked.wavelength_nm)[np.newaxis]},
     )
-    b, _ = asked.directions()
     n = cut_asked.at_points(material)
-    needle = Media((n[0][:, np.newaxis], n[1][:, np.newaxis]), b, asked.k0)
+    needle = Media((n[0][:, np.newaxis], n[1][:, np.newaxis]), asked.direction(), asked.k0)
     groups, turned = cut_asked.groups(), cut_asked.reversed_groups()
     fronts: list[_Amplitudes] = []
     backs: list[_Amplitudes] = []

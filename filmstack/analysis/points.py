@@ -15,7 +15,7 @@ import numpy as np
 from filmstack.errors import ArgumentError
 from filmstack.materials.material import Material
 from filmstack.stack import Layer, Plate, Stack
-from filmstack.wave.media import Ends, Media, Pair, complex_pair
+from filmstack.wave.media import Direction, Ends, Media, Pair, complex_pair
 from filmstack.wave.route import Group
 
 if TYPE_CHECKING:
@@ -98,51 +98,46 @@ class Request:
         re, im = complex_pair(self.index[material])
         return np.tile(re, self.shape[0]), np.tile(im, self.shape[0])
 
-    def directions(self) -> tuple[FloatArray, FloatArray]:
-        """Return b = N0 sin(theta0) and cos(theta0), shape (sample or 1, point)."""
+    def direction(self) -> Direction:
+        """Return the direction of the light at every point."""
+        n0, _ = self.at_points(self.stack.incident)
         sine = np.array([[sine_degrees(x) for x in row] for row in self.angle_deg.tolist()])
         cosine = np.array([[cosine_degrees(x) for x in row] for row in self.angle_deg.tolist()])
-        n0 = self.index[self.stack.incident].real
-        b = sine[:, :, np.newaxis] * n0[:, np.newaxis, :]
-        c = np.broadcast_to(cosine[:, :, np.newaxis], b.shape)
-        return b.reshape(len(b), -1), np.ascontiguousarray(c).reshape(len(b), -1)
+        sine, cosine = (np.repeat(x, self.wavelength_nm.size, axis=1) for x in (sine, cosine))
+        # One shape for all, so that every product is formed alike.
+        shape = np.broadcast_shapes(n0.shape, sine.shape)
+        return Direction(*(np.ascontiguousarray(np.broadcast_to(x, shape)) for x in (n0, sine, cosine)))
 
     def groups(self) -> list[Group]:
         """Return the coherent groups of films between the end media and the plates, front first."""
-        b, cosine = self.directions()
-        groups: list[Group] = []
-        media: list[Material] = [self.stack.incident, *(p.material for p in self.stack.plates), self.stack.exit]
-        first = 0
-        for number, films in enumerate(split_at_plates(self.stack)):
-            n0 = self.at_points(media[number])
-            if number == 0:
-                n0 = (n0[0], np.zeros_like(n0[1]))
-            ends = Ends(n0, self.at_points(media[number + 1]), b, cosine if number == 0 else None)
-            groups.append(self._group(films, ends, b, self.thickness[:, first : first + len(films)]))
-            first += len(films)
-        return groups
+        return self._groups(from_behind=False)
 
     def reversed_groups(self) -> list[Group]:
         """Return the same groups, front first, each as light from behind meets it."""
-        b, _ = self.directions()
-        media: list[Material] = [self.stack.incident, *(p.material for p in self.stack.plates), self.stack.exit]
+        return self._groups(from_behind=True)
+
+    def _groups(self, from_behind: bool) -> list[Group]:
+        direction, stack = self.direction(), self.stack
+        media = [self.at_points(m) for m in (stack.incident, *(p.material for p in stack.plates), stack.exit)]
+        media[0] = (media[0][0], np.zeros_like(media[0][1]))  # counts as lossless
         groups: list[Group] = []
         first = 0
-        for number, films in enumerate(split_at_plates(self.stack)):
-            front = self.at_points(media[number])
-            if number == 0:
-                front = (front[0], np.zeros_like(front[1]))
-            ends = Ends(self.at_points(media[number + 1]), front, b, None)
+        for number, films in enumerate(split_at_plates(stack)):
             thickness = self.thickness[:, first : first + len(films)]
-            groups.append(self._group(films[::-1], ends, b, thickness[:, ::-1]))
+            if from_behind:
+                ends = Ends(media[number + 1], media[number], direction)
+                groups.append(self._group(films[::-1], ends, thickness[:, ::-1]))
+            else:
+                ends = Ends(media[number], media[number + 1], direction, outer=number == 0)
+                groups.append(self._group(films, ends, thickness))
             first += len(films)
         return groups
 
-    def _group(self, films: list[Layer], ends: Ends, b: FloatArray, thickness: FloatArray) -> Group:
+    def _group(self, films: list[Layer], ends: Ends, thickness: FloatArray) -> Group:
         distinct = list(dict.fromkeys(film.material for film in films))
         pairs = [self.at_points(material) for material in distinct]
         samples = max((len(pair[0]) for pair in pairs), default=1)
-        points = b.shape[-1]
+        points = self.k0.size
         n = tuple(
             np.stack([np.broadcast_to(pair[part], (samples, points)) for pair in pairs], axis=1)
             if pairs
@@ -150,7 +145,7 @@ class Request:
             for part in (0, 1)
         )
         order = np.array([distinct.index(film.material) for film in films], dtype=np.int64)
-        return Group(Media((n[0], n[1]), b, self.k0), ends, order, np.ascontiguousarray(thickness))
+        return Group(Media((n[0], n[1]), ends.direction, self.k0), ends, order, np.ascontiguousarray(thickness))
 
 
 def split_at_plates(stack: Stack) -> list[list[Layer]]:

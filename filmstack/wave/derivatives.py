@@ -56,7 +56,7 @@ class Passes:
     def back(self) -> FloatArray:
         """Row vectors, level layer - j in front of layer j."""
         group, ends = self.group, self.group.ends
-        start = RowStart(ends.incident, ends.exit, ends.b, ends.cosine)
+        start = RowStart(ends.incident, ends.exit, ends.direction, ends.outer)
         turned = replace(group, ends=start, order=group.order[::-1], thickness=group.thickness[:, ::-1])
         return states(turned, every_layer=True)
 
@@ -170,7 +170,8 @@ class Passes:
         v = as_complex(media.v_p if p else media.v_s)[0, row]
         u = as_complex(media.u_p)[0, row] if p else np.ones_like(v)
         with np.errstate(divide="ignore", invalid="ignore"):
-            du = np.where(media.b[0] == 0.0, 0.0, 2.0 * media.b[0] ** 2 / n**3) if p else np.zeros_like(v)
+            du = 2.0 * media.direction.b[0] ** 2 / n**3 if p else np.zeros_like(v)
+        du = np.where(media.direction.straight[0], 0.0, du)
         dv = 2.0 * n
         e, h, w0, w1 = self._waves(layer + 1, layer, p)
         quadratic, bilinear = (as_complex(pair)[0] for pair in self.factors(p))

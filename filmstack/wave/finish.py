@@ -76,8 +76,7 @@ class Front:
     @property
     def grazing(self) -> BoolArray:
         """True where light grazes the stack: at exactly 90 degrees, or with no wave towards it at all."""
-        cosine = self.ends.cosine
-        return np.asarray((self.size == 0.0) | (np.False_ if cosine is None else cosine == 0.0))
+        return np.asarray((self.size == 0.0) | (self.ends.outer & (self.ends.direction.cosine == 0.0)))
 
     @cached_property
     def r(self) -> Pair:

@@ -32,10 +32,52 @@ def over(a: Pair, b: Pair) -> Pair:
     return (a[0] * b[0] + a[1] * b[1]) / size, (a[1] * b[0] - a[0] * b[1]) / size
 
 
-def normal_wavenumber(n: Pair, b: FloatArray) -> tuple[Pair, Pair]:
-    """Return kappa and kappa^2, the root with Im kappa <= 0; kappa is +-N itself where b = 0."""
+@dataclass(frozen=True)
+class Direction:
+    """The direction of the light at a set of points, shape (sample or 1, point).
+
+    Parameters
+    ----------
+    n0 : ndarray
+        Index of the outer, lossless incident medium. [1]
+    sine, cosine : ndarray
+        Of the angle of incidence there. [1]
+    """
+
+    n0: FloatArray
+    sine: FloatArray
+    cosine: FloatArray
+
+    @cached_property
+    def b(self) -> FloatArray:
+        """Transverse index N0 sin(theta0)."""
+        return self.n0 * self.sine
+
+    @cached_property
+    def straight(self) -> BoolArray:
+        """Points of normal incidence, where p is s."""
+        return self.b == 0.0
+
+    def of_media(self) -> Direction:
+        """Return the same with an axis for media between sample and point."""
+        return Direction(*(x[:, np.newaxis, :] for x in (self.n0, self.sine, self.cosine)))
+
+    def picked(self, sample: int, points: IntArray) -> Direction:
+        """Return the direction of one sample at some points."""
+        return Direction(*(x[min(sample, len(x) - 1)][np.newaxis, points] for x in (self.n0, self.sine, self.cosine)))
+
+
+def normal_wavenumber(n: Pair, direction: Direction) -> tuple[Pair, Pair]:
+    """Return kappa and kappa^2, the root with Im kappa <= 0; kappa is +-N itself at normal incidence.
+
+    kappa^2 = (N - b)(N + b); where n >= N0, rather (N - N0)(N + N0) + (N0 cos)^2, a sum that keeps its digits
+    next to grazing incidence, where the sine does not.
+    """
     nr, ni = n
-    x = (nr - b) * (nr + b) - ni * ni
+    b, n0 = direction.b, direction.n0
+    height = n0 * direction.cosine
+    x = np.where(nr < n0, (nr - b) * (nr + b), (nr - n0) * (nr + n0) + height * height) - ni * ni
+    x = np.where(direction.straight, nr * nr - ni * ni, x)
     y = 2.0 * nr * ni
     size = np.sqrt(x * x + y * y)
     larger = np.sqrt(0.5 * (np.abs(x) + size))
@@ -44,8 +86,8 @@ def normal_wavenumber(n: Pair, b: FloatArray) -> tuple[Pair, Pair]:
     re = np.where(x >= 0.0, larger, smaller)
     im = -np.where(x >= 0.0, smaller, larger)
     re = np.where(y > 0.0, -re, re)
-    straight = b == 0.0
-    return (np.where(straight, np.where(ni > 0.0, -nr, nr), re), np.where(straight, -np.abs(ni), im)), (x, y)
+    re = np.where(direction.straight, np.where(ni > 0.0, -nr, nr), re)
+    return (re, np.where(direction.straight, -np.abs(ni), im)), (x, y)
 
 
 @dataclass(frozen=True)
@@ -56,19 +98,19 @@ class Media:
     ----------
     n : pair of ndarray, shape (sample or 1, medium, point)
         Refractive index N = nr + i ni of each distinct film medium. [1]
-    b : ndarray, shape (sample or 1, point)
-        Transverse index N0 sin(theta0). [1]
+    direction : Direction
+        Direction of the light.
     k0 : ndarray, shape (point,)
         Vacuum wavenumber 2 pi / lambda. [1/nm]
     """
 
     n: Pair
-    b: FloatArray
+    direction: Direction
     k0: FloatArray
 
     @cached_property
     def _wavenumber(self) -> tuple[Pair, Pair]:
-        return normal_wavenumber(self.n, self.b[:, np.newaxis, :])
+        return normal_wavenumber(self.n, self.direction.of_media())
 
     @property
     def kappa(self) -> Pair:
@@ -91,7 +133,7 @@ class Media:
         """kappa^2 / N^2, 1 where b = 0; 0 where N = 0, which the caller treats apart."""
         with np.errstate(divide="ignore", invalid="ignore"):
             re, im = over(self.v_s, self.v_p)
-        straight = self.b[:, np.newaxis, :] == 0.0
+        straight = self.direction.of_media().straight
         none = (self.v_p[0] == 0.0) & (self.v_p[1] == 0.0)
         re = np.where(straight, 1.0, np.where(none, 0.0, re))
         return re, np.where(straight | none, 0.0, im)
@@ -136,24 +178,24 @@ class Ends:
     ----------
     incident, exit : pair of ndarray, shape (sample or 1, point)
         Refractive index N = nr + i ni. [1]
-    b : ndarray, shape (sample or 1, point)
-        Transverse index. [1]
-    cosine : ndarray, shape (sample or 1, point), or None
-        Cosine of the angle of incidence, where the incident medium is the outer, lossless one;
-        None for a plate as incident medium, whose normal wavenumber is computed.
+    direction : Direction
+        Direction of the light.
+    outer : bool
+        The incident medium is the outer, lossless one; else it is a plate, or the light comes from behind, and
+        its normal wavenumber is computed.
     """
 
     incident: Pair
     exit: Pair
-    b: FloatArray
-    cosine: FloatArray | None = None
+    direction: Direction
+    outer: bool = False
     blocked: bool = False
     """p ends at a film of N = 0: there H = 0, whatever stands behind."""
 
     @cached_property
     def exit_kappa(self) -> Pair:
         """Normal wavenumber of the exit medium over k0."""
-        return normal_wavenumber(self.exit, self.b)[0]
+        return normal_wavenumber(self.exit, self.direction)[0]
 
     def exit_fields(self, p: bool) -> tuple[Pair, Pair]:
         """Return E and H at the exit: s (1, kappa), p (kappa, N^2), never a division by what can be 0."""
@@ -164,7 +206,7 @@ class Ends:
         if self.blocked:
             return (one, nothing), (nothing, nothing)
         nr, ni = self.exit
-        straight = self.b == 0.0
+        straight = self.direction.straight
         return (
             (np.where(straight, one, kr), np.where(straight, nothing, ki)),
             (np.where(straight, kr, nr * nr - ni * ni), np.where(straight, ki, 2.0 * nr * ni)),
@@ -173,17 +215,18 @@ class Ends:
     def incident_pair(self, p: bool) -> tuple[Pair, Pair]:
         """Return (a1, a2) such that a1 E + a2 H is the wave towards the stack, a1 E - a2 H the one back."""
         nr, ni = np.broadcast_arrays(*self.incident)
-        if self.cosine is not None:
-            nothing = np.zeros(np.broadcast_shapes(self.b.shape, nr.shape))
-            straight = self.b == 0.0
+        if self.outer:
+            cosine = self.direction.cosine
+            nothing = np.zeros(np.broadcast_shapes(cosine.shape, nr.shape))
+            straight = self.direction.straight
             if not p:
-                return (nr * self.cosine + nothing, nothing), (1.0 + nothing, nothing)
-            return (nr + nothing, nothing), (np.where(straight, 1.0, self.cosine) + nothing, nothing)
-        kappa, _ = normal_wavenumber(self.incident, self.b)
+                return (nr * cosine + nothing, nothing), (1.0 + nothing, nothing)
+            return (nr + nothing, nothing), (np.where(straight, 1.0, cosine) + nothing, nothing)
+        kappa, _ = normal_wavenumber(self.incident, self.direction)
         one = (np.ones_like(kappa[0]), np.zeros_like(kappa[0]))
         if not p:
             return kappa, one
-        straight = self.b == 0.0
+        straight = self.direction.straight
         square = (nr * nr - ni * ni, 2.0 * nr * ni)
         return (
             (np.where(straight, nr, square[0]), np.where(straight, ni, square[1])),
@@ -202,7 +245,7 @@ class Ends:
         double = 2.0 * (ar * cr)
         if not p:
             return double, np.zeros_like(double)
-        straight = self.b == 0.0
+        straight = self.direction.straight
         nr, ni = self.exit
         return double * np.where(straight, 1.0, nr), double * np.where(straight, 0.0, ni)
 
@@ -217,8 +260,8 @@ class Ends:
             rows += [ar, cr]
         flux = [self.flux(p) for p in (False, True)]
         closed = (flux[0] == 0.0) & (flux[1] == 0.0) & lossless_films
-        if self.cosine is not None:
-            closed = closed | (self.cosine == 0.0)
+        if self.outer:
+            closed = closed | (self.direction.cosine == 0.0)
         rows_closed = closed.astype(float)
         rows += [*flux, rows_closed]
         shape = np.broadcast_shapes(*(row.shape for row in rows))

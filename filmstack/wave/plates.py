@@ -98,10 +98,10 @@ class PlateChain:
     @cached_property
     def decays(self) -> list[FloatArray]:
         """Exponent y of each plate; infinite where its wave is evanescent without loss and carries no power."""
-        b = self.groups[0].front.ends.b
+        direction = self.groups[0].front.ends.direction
         rows = []
         for n, thickness in self.plates:
-            kappa = normal_wavenumber(n, b)[0]
+            kappa = normal_wavenumber(n, direction)[0]
             powerless = (n[1] == 0.0) & (kappa[0] == 0.0)
             rows.append(np.where(powerless, np.inf, -2.0 * self.k0 * thickness * kappa[1]))
         return rows
@@ -154,7 +154,7 @@ class PlateChain:
         if place >= len(self.plates):
             return np.zeros(1, dtype=bool)
         n, _ = self.plates[place]
-        kappa = normal_wavenumber(n, self.groups[0].front.ends.b)[0]
+        kappa = normal_wavenumber(n, self.groups[0].front.ends.direction)[0]
         return np.asarray((n[1] == 0.0) & (kappa[1] == 0.0) & (kappa[0] > 0.0))
 
     @cached_property

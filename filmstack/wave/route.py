@@ -80,13 +80,14 @@ class Group:
     @property
     def oblique(self) -> bool:
         """Whether p differs from s at any point."""
-        return bool(np.any(self.media.b != 0.0))
+        return not bool(np.all(self.media.direction.straight))
 
     @property
     def shape(self) -> tuple[int, int]:
         """Number of samples and of points."""
-        samples = max(len(self.thickness), len(self.media.b), len(self.media.n[0]), len(self.ends.exit[0]))
-        return samples, self.media.b.shape[-1]
+        direction = self.media.direction
+        samples = max(len(self.thickness), len(direction.b), len(self.media.n[0]), len(self.ends.exit[0]))
+        return samples, direction.b.shape[-1]
 
 
 def powers(group: Group) -> FloatArray:
@@ -138,7 +139,7 @@ def _may_block(group: Group) -> bool:
 
 def blocking_films(group: Group) -> BoolArray:
     """Return True where a film of N = 0 and thickness > 0 meets p at oblique incidence, (sample, layer, point)."""
-    empty = (group.media.n[0] == 0.0) & (group.media.n[1] == 0.0) & (group.media.b != 0.0)[:, np.newaxis, :]
+    empty = (group.media.n[0] == 0.0) & (group.media.n[1] == 0.0) & ~group.media.direction.of_media().straight
     return np.asarray(empty[:, group.order] & (group.thickness > 0.0)[:, :, np.newaxis])
 
 
@@ -162,14 +163,11 @@ def _picked(group: Group, sample: int, points: IntArray) -> Group:
         return np.ascontiguousarray(values[min(sample, len(values) - 1)][np.newaxis][..., points])
 
     media, ends = group.media, group.ends
+    direction = media.direction.picked(sample, points)
+    incident, leaving = (one(ends.incident[0]), one(ends.incident[1])), (one(ends.exit[0]), one(ends.exit[1]))
     return Group(
-        Media((one(media.n[0]), one(media.n[1])), one(media.b), media.k0[points]),
-        Ends(
-            (one(ends.incident[0]), one(ends.incident[1])),
-            (one(ends.exit[0]), one(ends.exit[1])),
-            one(ends.b),
-            None if ends.cosine is None else one(ends.cosine),
-        ),
+        Media((one(media.n[0]), one(media.n[1])), direction, media.k0[points]),
+        Ends(incident, leaving, direction, ends.outer),
         group.order,
         group.thickness[min(sample, len(group.thickness) - 1)][np.newaxis],
     )

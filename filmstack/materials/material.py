@@ -117,7 +117,9 @@ class Material(ABC):
             If a wavelength or the temperature lies outside the data.
         """
         wavelength = self._checked(wavelength_nm)
-        n: ComplexArray = np.asarray(self._index(wavelength, temperature_c), dtype=complex).reshape(wavelength.shape)
+        n: ComplexArray = np.asarray(self._index(wavelength.ravel(), temperature_c), dtype=complex).reshape(
+            wavelength.shape
+        )
         change = self._thermal_change(wavelength, temperature_c)
         return np.asarray(n + change, dtype=complex)
 
@@ -150,7 +152,8 @@ class Material(ABC):
         if not 0 <= order <= self.derivative_order:
             raise ArgumentError(f"order: {self.label}: expected 0 to {self.derivative_order} derivatives, got {order}")
         wavelength = self._checked(wavelength_nm)
-        rows = np.array(self._index_derivatives(wavelength, order, temperature_c), dtype=complex)
+        rows = np.array(self._index_derivatives(wavelength.ravel(), order, temperature_c), dtype=complex)
+        rows = rows.reshape(order + 1, *wavelength.shape)
         rows[0] += self._thermal_change(wavelength, temperature_c)
         return rows
 
@@ -195,8 +198,8 @@ class Material(ABC):
 
     @abstractmethod
     def _index(self, wavelength_nm: FloatArray, temperature_c: float | None) -> ComplexArray:
-        """Return N at wavelengths inside the range."""
+        """Return N at a row of wavelengths inside the range."""
 
     @abstractmethod
     def _index_derivatives(self, wavelength_nm: FloatArray, order: int, temperature_c: float | None) -> ComplexArray:
-        """Return N and its derivatives by photon energy at wavelengths inside the range."""
+        """Return N and its derivatives by photon energy at a row of wavelengths inside the range."""

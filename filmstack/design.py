@@ -422,9 +422,7 @@ class _Media:
             return constant(value["n"], value.get("k", 0.0))
         from filmstack.materials.library import material
 
-        if value.lower().endswith(".csv"):
-            return material(str(self._folder / value))
-        return material(value, folder=self._folder / "materials")
+        return material(value, folder=self._folder)
 
 
 def _stack(values: Mapping[str, Any], media: _Media) -> Stack:

@@ -76,7 +76,13 @@ def _one_thickness(values: Mapping[str, Any], where: str, faults: Faults) -> Non
 
 def _one_shape(values: Mapping[str, Any], where: str, faults: Faults) -> None:
     """Check that an entry is a layer, or a group, or a sequence."""
-    shapes = [name for name in ("material", "layers", "sequence") if name in values]
+    shapes = [name for name in _SHAPES if name in values]
+    if not shapes and "repeat" in values:
+        faults.add(f"{where}.layers", f"expected {GROUP[1].kind.expected}, got none")
+        return
+    if not shapes and any(key.name in values for key in LAYER):
+        faults.add(f"{where}.material", f"expected {_MATERIAL.expected}, got none")
+        shapes = ["material"]
     if len(shapes) != 1:
         found = " and ".join(shapes) or "none of them"
         faults.add(where, f"expected material (a layer), layers (a group) or sequence, got {found}")
@@ -84,7 +90,9 @@ def _one_shape(values: Mapping[str, Any], where: str, faults: Faults) -> None:
     shape = _SHAPES[shapes[0]]
     for name in _ENTRY_KEYS:
         if name in values and name not in shape.keys:
-            faults.add(f"{where}.{name}", f"not a key of {shape.name}", "" if name == "repeat" else shape.advice)
+            faults.add(
+                f"{where}.{name}", f"not a key of {shape.name}", _GROUP_ADVICE if name == "repeat" else shape.advice
+            )
     if shapes[0] == "material":
         _one_thickness(values, where, faults)
 
@@ -121,7 +129,7 @@ LAYER = (
 GROUP = (
     Key(
         "repeat",
-        Number("a number of repeats", least=1, most=MOST_LAYERS, whole=True),
+        Number("a whole number of repeats", least=1, most=MOST_LAYERS, whole=True),
         "how often the group stands in a row, absent: once",
     ),
     Key(
@@ -186,6 +194,7 @@ def _whole_file(values: Mapping[str, Any], where: str, faults: Faults) -> None:
             faults.add(place, f"expected at most {MOST_LAYERS:,} layers, got {_count(entries):,}")
 
 
+_GROUP_ADVICE = "Write a group: repeat = ... and layers = [{ ... }]"
 _PLATE_ADVICE = "Without it the substrate is semi-infinite: light ends in it"
 
 
@@ -270,12 +279,12 @@ DESIGN = Table(
         Key("back_sequence", _Sequence(), "the same for the back face, in the place of [[back_layer]]"),
         Key(
             "materials",
-            Named("a table of materials", _MATERIAL, "a name", lambda name: bool(name.strip())),
+            Named("a table of materials", _MATERIAL, "a name that is not blank", lambda name: bool(name.strip())),
             "names of your own for materials, files and constant indices",
         ),
         Key(
             "letters",
-            Named("a table of letters", _LETTER, "one letter, A to Z or a to z,", _is_letter),
+            Named("a table of letters", _LETTER, "a name of one letter, A to Z or a to z", _is_letter),
             "layers that the letters of sequences stand for",
         ),
         Key("layer", Tables("a list of layers", lambda: ENTRY), "the layers, in the order the light meets them"),

@@ -8,7 +8,7 @@ are so collected before any is told. A new kind is one class with `expected` and
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Iterator, Mapping, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence, Set
 from dataclasses import dataclass, field
 from typing import Any, Final, Protocol
 
@@ -275,28 +275,35 @@ class Table:
             return faults.add(where, f"expected {self.expected}, got {told(value)}")
         before = len(faults.found)
         dot = f"{where}." if where else ""
-        known = [key.name for key in self.keys]
-        for name in value:
-            if name not in known:
-                otherwise = f"The keys are {', '.join(known)}"
-                left = [key for key in known if key not in value]
-                faults.add(f"{dot}{name}", f"unknown key of {self.what}", nearest(name, left, otherwise))
+        meant = self._unknown(value, dot, faults)
         values: dict[str, Any] = {}
         for key in self.keys:
             if key.name in value:
                 read = key.kind.read(value[key.name], f"{dot}{key.name}", faults)
                 values |= {} if read is WRONG else {key.name: read}
-            elif key.required:
+            elif key.required and key.name not in meant:
                 faults.add(f"{dot}{key.name}", f"expected {key.kind.expected}, got none")
         if self.rule:
-            self.rule(_Partly(values, value), where, faults)
+            self.rule(_Partly(values, value.keys() | meant), where, faults)
         return WRONG if len(faults.found) > before else values
+
+    def _unknown(self, value: Mapping[str, Any], dot: str, faults: Faults) -> set[str]:
+        """Note the unknown keys and return those that were probably meant."""
+        known = [key.name for key in self.keys]
+        left = [name for name in known if name not in value]
+        meant: set[str] = set()
+        for name in value:
+            if name not in known:
+                hint = nearest(name, left, "")
+                faults.add(f"{dot}{name}", f"unknown key of {self.what}", hint or f"The keys are {', '.join(known)}")
+                meant |= {key for key in left if hint == nearest(key, [key], "")}
+        return meant
 
 
 class _Partly(Mapping[str, Any]):
     """Right values of a table, which also knows which keys were written, rightly or wrongly (`in`)."""
 
-    def __init__(self, right: Mapping[str, Any], written: Mapping[str, Any]) -> None:
+    def __init__(self, right: Mapping[str, Any], written: Set[str]) -> None:
         self._right, self._written = right, written
 
     def __getitem__(self, name: str) -> Any:  # noqa: ANN401 - any value of TOML
@@ -380,12 +387,13 @@ class Named:
         """Return the table, or `WRONG`."""
         if not isinstance(value, dict):
             return faults.add(where, f"expected {self.what}, got {told(value)}")
+        before = len(faults.found)
         values = {}
         for name, item in value.items():
             if not self.allows(name):
-                faults.add(f"{where}.{name}", f"expected {self.name} as its name, got {name!r}")
+                faults.add(where, f"expected {self.name}, got {name!r}")
             values[name] = self.kind.read(item, f"{where}.{name}", faults)
-        return WRONG if any(item is WRONG for item in values.values()) else values
+        return WRONG if len(faults.found) > before else values
 
 
 def help_lines(keys: Sequence[Key], indent: str = "  ") -> list[str]:

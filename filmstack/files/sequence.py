@@ -14,13 +14,15 @@ from typing import TypeAlias
 MOST_NESTED = 50
 _BEHIND_FACTOR = "expected a letter or a parenthesis behind the factor"
 _ADVICE = {
-    "^": "Write a whole number behind ^",
+    "^": "Write a whole number and a blank behind ^",
     "/": "Write half a layer as 0.5H",
     "*": "Write a factor straight before the letter",
     ",": "Write a decimal point, not a comma",
     "-": "Factors and powers have no sign",
 }
-_TOKEN = re.compile(r"\s*(?:(?P<factor>[0-9]+\.?[0-9]*|\.[0-9]+)|(?P<power>\^\s*[0-9]+)|(?P<mark>[A-Za-z()]))")
+_TOKEN = re.compile(
+    r"\s*(?:(?P<factor>[0-9]+\.?[0-9]*|\.[0-9]+)|(?P<power>\^\s*[0-9]+(?![0-9.]))|(?P<mark>[A-Za-z()]))"
+)
 
 
 @dataclass(frozen=True)
@@ -127,8 +129,8 @@ def _words(text: str) -> Iterator[tuple[int, str, str]]:
     at = 0
     while at < end:
         match = _TOKEN.match(text, at)
-        if not match:
-            at += len(text[at:]) - len(text[at:].lstrip())
+        if not match or text.startswith(",", match.end()):
+            at = match.end() if match else at + len(text[at:]) - len(text[at:].lstrip())
             expected = "expected a letter, a factor, a power or a parenthesis"
             raise SequenceError(at + 1, f"{expected}, got {text[at]!r}", _ADVICE.get(text[at], ""))
         kind = str(match.lastgroup)
@@ -147,7 +149,7 @@ def _power(word: str, place: int) -> int:
     digits = word[1:].strip()
     value = int(digits) if len(digits) <= 9 else 10**9
     if value < 1:
-        raise SequenceError(place, f"expected a power >= 1, got {digits}", "Leave it out")
+        raise SequenceError(place, f"expected a power >= 1, got {digits}")
     return value
 
 

@@ -98,6 +98,8 @@ def _no_toml(name: str, text: str, message: str, error: type[FilmstackError]) ->
 def _advice(line: str, what: str) -> str:
     if what.startswith("cannot overwrite"):
         return "A key stands once in a table; a new layer begins with [[layer]]"
+    if what == r"illegal character '\n'":
+        return "Close the text with a quotation mark"
     if re.search(r"=\s*[-+]?\d+,\d+\s*(#.*)?$", line):
         return "Write a decimal point, not a comma"
     if re.search(r"=\s*[^\W\d][^\"'\[{]*$", line):

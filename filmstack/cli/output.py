@@ -81,10 +81,11 @@ def material_lines(materials: Iterable[Material]) -> list[str]:
     lines = []
     for material in known:
         low, high = material.range_nm
-        span = f", {low:g} to {high:g} nm" if math.isfinite(high) else ""
-        label = "" if material.label == material.key and not span else f"  {material.label}{span}"
-        lines.append(f"  {material.key:<{width}}{label}".rstrip())
-        lines += [f"  {'':<{width}}    {note}" for note in material.provenance.notes]
+        span = [f"{low:g} to {high:g} nm"] if math.isfinite(high) else []
+        texts = [material.label, *span] if material.label != material.key else [*span, *material.provenance.notes]
+        lines.append(f"  {material.key:<{width}}  {', '.join(texts)}".rstrip())
+        if material.label != material.key:
+            lines += [f"  {'':<{width}}    {note}" for note in material.provenance.notes]
     return lines
 
 

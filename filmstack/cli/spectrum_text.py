@@ -21,6 +21,9 @@ if TYPE_CHECKING:
 SUFFIXES = {"s": ("_s",), "p": ("_p",), "mean": ("",), "all": ("_s", "_p", "")}
 """Endings of the attributes of a spectrum that belong to a choice of polarization."""
 
+LEAST_FOR_SUMMARY = 5
+"""Rows from which on mean, lowest and highest stand below a table."""
+
 MOST_ROWS, MOST_BLOCKS = 60, 8
 """Rows of a table and tables of a page; of more, every so many-th is shown."""
 
@@ -182,7 +185,7 @@ def _table(spectrum: Spectrum, place: int, along: bool, polarization: str, scale
         [f"{axis[number]:.9g}", *(f"{column[number]:.4f}" for column in columns)]
         for number in range(_first_round(axis, every), axis.size, every)
     ]
-    if axis.size > 1:
+    if axis.size >= LEAST_FOR_SUMMARY:
         means = [float(np.mean(part[place] if along else part[:, place])) for part in fractions]
         rows.append([""] * (len(columns) + 1))
         rows.append(

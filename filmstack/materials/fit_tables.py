@@ -41,7 +41,7 @@ def fit_tables() -> dict[str, AnyArray]:
 def main() -> None:
     """Fit and write the file of curves."""
     with atomic_writer(shipped_folder("materials") / CURVES, "wb") as file:
-        np.savez(file, **fit_tables())
+        np.savez(file, allow_pickle=False, **fit_tables())
 
 
 if __name__ == "__main__":

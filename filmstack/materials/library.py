@@ -10,7 +10,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from functools import cache
 from pathlib import Path
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
 from filmstack.errors import MaterialNotFoundError
 from filmstack.materials.material import Material, Provenance
@@ -109,7 +109,7 @@ DEFAULTS: Mapping[str, str] = {
 }
 """Key that a plain name stands for."""
 
-UNITY = {"air": "air, index 1 exactly", "vacuum": "vacuum"}
+UNITY = {"air": "air", "vacuum": "vacuum"}
 """Media of index 1."""
 
 
@@ -172,10 +172,10 @@ def material(
     path = _own_file(word, folder)
     if path is not None:
         changed = path.stat()
-        return _user_table(path.resolve(), word, changed.st_mtime_ns, changed.st_size, allow_gain)
+        return _user_table(path, path.resolve(), changed.st_mtime_ns, changed.st_size, allow_gain)
     if word in UNITY or word in DEFAULTS:
         return _shipped(DEFAULTS.get(word, word))
-    if word in formula_entries() or _is_table(word):
+    if _is_table(word) or word in formula_entries():
         return _shipped(word)
     raise _not_found(word, folder)
 
@@ -231,8 +231,8 @@ def _own_file(word: str, folder: str | os.PathLike[str] | None) -> Path | None:
 
 
 @cache
-def _user_table(path: Path, word: str, changed: int, size: int, allow_gain: bool) -> Material:
-    """Read a user's file; time and size of the file let a changed file be read again."""
+def _user_table(path: Path, resolved: Path, changed: int, size: int, allow_gain: bool) -> Material:
+    """Read a user's file once; its place, time and size tell whether it is still the same file."""
     from filmstack.materials.reader import read_material
 
     return read_material(path, allow_gain=allow_gain)
@@ -252,12 +252,16 @@ def _shipped(key: str) -> Material:
         from filmstack.materials.models.constant import Constant
 
         return Constant(1.0, 0.0, _unity_provenance(key))
-    entries: Mapping[str, Mapping[str, Any]] = formula_entries()
-    return build_formula(key, entries[key]) if key in entries else shipped_table(key)
+    if _is_table(key):  # asked first: reading all formula entries takes longer than reading one table
+        return shipped_table(key)
+    return build_formula(key, formula_entries()[key])
 
 
 def _unity_provenance(name: str) -> Provenance:
-    return Provenance(key=name, label=UNITY[name], source="definition", form="gas or vacuum", status="exact")
+    note = ("index 1 exactly",)
+    return Provenance(
+        key=name, label=UNITY[name], source="definition", form="gas or vacuum", status="exact", notes=note
+    )
 
 
 def _not_found(word: str, folder: str | os.PathLike[str] | None) -> MaterialNotFoundError:

@@ -186,7 +186,7 @@ def printed_tolerance(cells: list[str]) -> FloatArray:
     ----------
     cells : list of str
         Numbers as printed, decimal point. Trailing zeros may have been dropped, so that a number counts
-        as printed with as many decimals as the longest of the five before and behind it.
+        as printed with as many decimals as the longest of the five before and behind it, and two at least.
 
     Returns
     -------
@@ -200,7 +200,7 @@ def printed_tolerance(cells: list[str]) -> FloatArray:
     decimals = np.array([_decimals(cell) for cell in cells])
     padded = np.pad(decimals, 5, constant_values=-99)
     longest = np.max(np.lib.stride_tricks.sliding_window_view(padded, 11), axis=1)
-    return np.asarray(0.5 * 10.0 ** -longest.astype(float))
+    return np.asarray(0.5 * 10.0 ** -np.maximum(longest, 2).astype(float))
 
 
 def _decimals(cell: str) -> int:

@@ -107,13 +107,13 @@ def _judge_names(where: str, header: list[str], names: list[str], faults: list[F
     def fault(problem: str, advice: str) -> None:
         faults.append(MaterialFileError(where, problem, advice))
 
-    for cell, name in zip(header, names, strict=True):
+    for place, (cell, name) in enumerate(zip(header, names, strict=True)):
         if name in _SPELLINGS:
             fault(f"expected a column with its unit, found {cell!r}", f"Name it {nearest_unit(name)}")
         elif name not in known:
             advice = nearest(name, known, f"The columns are {', '.join(known)}")
             fault(f"unknown column {cell!r}", advice)
-        elif names.count(name) > 1 and names.index(name) == header.index(cell):
+        elif name in names[:place]:
             fault(f"column {name} stands twice", "Keep one")
     if faults:
         return

@@ -11,9 +11,10 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
+from filmstack.cli.designs import load_designs
 from filmstack.cli.options import add_options
 from filmstack.cli.parser import Options
-from filmstack.errors import FilmstackError, all_faults
+from filmstack.errors import FilmstackError
 
 if TYPE_CHECKING:
     from filmstack.design import Design
@@ -69,7 +70,7 @@ def run(options: Options) -> int:
         print(help_text())
         return 0
     if not options.designs:
-        raise FilmstackError("filmstack show", "expected DESIGN, got none", "See filmstack show --help")
+        raise FilmstackError("show", "expected DESIGN, got none", "See filmstack show --help")
     designs = load_designs(options.designs)
     if options.plot:
         from filmstack.report.profile_plot import profile_figure
@@ -84,36 +85,6 @@ def run(options: Options) -> int:
         pages = ["\n".join(page(design)) for design in designs]
         print("\n\n".join([*pages, f"wrote {options.plot}"] if options.plot else pages))
     return 0
-
-
-def load_designs(paths: Sequence[str]) -> list[Design]:
-    """Return the designs of several files, or one error with the faults of all.
-
-    Parameters
-    ----------
-    paths : sequence of str
-        Design files.
-
-    Returns
-    -------
-    list of Design
-
-    Raises
-    ------
-    FilmstackError
-        If a file is wrong.
-    """
-    from filmstack.design import load_design
-
-    designs, faults = [], list[FilmstackError]()
-    for path in paths:
-        try:
-            designs.append(load_design(path))
-        except FilmstackError as fault:
-            faults.append(fault)
-    if faults:
-        raise all_faults(faults)
-    return designs
 
 
 def film_rows(design: Design) -> list[Row]:

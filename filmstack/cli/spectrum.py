@@ -12,9 +12,10 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
+from filmstack.cli.designs import load_designs
 from filmstack.cli.options import OPTIONS, add_options
 from filmstack.cli.parser import Options, one_of
-from filmstack.errors import FilmstackError, all_faults
+from filmstack.errors import FilmstackError
 
 if TYPE_CHECKING:
     from matplotlib.figure import Figure
@@ -122,18 +123,7 @@ def run(options: Options) -> int:
 
 
 def _parts(options: Options) -> list[Part]:
-    """Load every design, telling the faults of all files at once, and compute."""
-    from filmstack.design import load_design
-
-    designs: list[Design] = []
-    faults: list[FilmstackError] = []
-    for path in options.designs:
-        try:
-            designs.append(load_design(path))
-        except FilmstackError as fault:
-            faults.append(fault)
-    if faults:
-        raise all_faults(faults)
+    designs = load_designs(options.designs)
     names = [design.name for design in designs]
     return [
         _part(design, path, path if names.count(design.name) > 1 else design.name, options)

@@ -169,7 +169,7 @@ def material(
     'SiO2, ion-assisted film (Gao 2013)'
     """
     word = str(name)
-    path = _own_file(word, folder)
+    path = own_file(word, folder)
     if path is not None:
         changed = path.stat()
         return _user_table(path, path.resolve(), changed.st_mtime_ns, changed.st_size, allow_gain)
@@ -213,8 +213,20 @@ def _record(provenance: Provenance, kind: str) -> MaterialRecord:
     return MaterialRecord(p.key, p.label, p.form, p.range_nm, names, kind, p.source, p.status, p.notes)
 
 
-def _own_file(word: str, folder: str | os.PathLike[str] | None) -> Path | None:
-    """Return the user's own file of a name, if there is one."""
+def own_file(word: str, folder: str | os.PathLike[str] | None) -> Path | None:
+    """Return the user's own file of a name, if there is one.
+
+    Parameters
+    ----------
+    word : str
+        Name, key or path, as for `material`.
+    folder : path, optional
+        Folder of the design.
+
+    Returns
+    -------
+    Path or None
+    """
     if word.lower().endswith(".csv"):
         given = Path(word).expanduser()
         places = [given] if folder is None else [Path(folder) / given, Path(folder) / "materials" / given, given]

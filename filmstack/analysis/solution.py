@@ -26,6 +26,8 @@ if TYPE_CHECKING:
 class Solution(Protocol):
     """What a solved request can tell; shapes (sample, angle, wavelength)."""
 
+    request: Request
+
     def reflectance(self, p: bool) -> FloatArray:
         """Return R."""
 

@@ -44,6 +44,11 @@ class Spectrum:
     transmittance_into: str
     _solution: Solution
 
+    @property
+    def stack(self) -> Stack:
+        """The stack that the light meets."""
+        return self._solution.request.stack
+
     @cached_property
     def R_s(self) -> FloatArray:
         """Reflectance of s. [1]"""

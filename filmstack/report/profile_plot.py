@@ -84,6 +84,30 @@ def profile_figure(designs: Sequence[Design]) -> Figure:
     return figure
 
 
+def draw_profile(design: Design, axes: Axes | None = None) -> Axes:
+    """Draw the index profile of a design, of the films before the plate if there is one.
+
+    Parameters
+    ----------
+    design : Design
+        What to draw.
+    axes : Axes, optional
+        Where to draw; a new figure if not given.
+
+    Returns
+    -------
+    Axes
+    """
+    materials = list(dict.fromkeys(design.stack.materials))
+    with quiet_style():
+        if axes is None:
+            _, panels = panel_grid(1, 1, panel=(5.4, 2.6), margins=Margins(top=0.4))
+            axes = panels[0, 0]
+        face = faces(design)[0]
+        draw_face(face, design.reference_wavelength_nm, materials, axes, f"{design.name} {face.title}".rstrip())
+    return axes
+
+
 def faces(design: Design) -> list[Face]:
     """Return the rows of films of a design: one, or those of both faces of its plate.
 

@@ -138,7 +138,10 @@ def draw_spectrum(spectrum: Spectrum, axes: Axes | None = None) -> Axes:
     quantities = [name for name in "RTA" if name != "A" or _absorbs([Labelled("", spectrum)])]
     with quiet_style():
         if axes is None:
-            _, panels = panel_grid(1, 1, panel=(5.6, 3.2), margins=Margins(top=0.3, right=1.1))
+            sources = "; ".join(material.label for material in spectrum.stack.materials)
+            small_print = [f"Materials: {sources}.", *(f"Note: {note}." for note in spectrum.notes)]
+            margins = Margins(top=0.3, right=1.1)
+            _, panels = panel_grid(1, 1, panel=(5.6, 3.2), margins=margins, small_print=small_print)
             axes = panels[0, 0]
         curves = list(_curves([Labelled("", spectrum)], view))
         _refuse_many(len(quantities) * len(curves), view)

@@ -221,6 +221,7 @@ def test_spectrum_draws_itself_on_a_new_figure_without_global_state():
 
     axes = labelled([0.0, 45.0]).spectrum.plot()
     assert {"R 0°", "R 45°", "T 0°", "T 45°"} <= set(texts(axes.figure))
+    assert any(text.startswith("Materials: constant index 1; constant index 2.35;") for text in texts(axes.figure))
     assert "matplotlib.pyplot" not in sys.modules or not sys.modules["matplotlib.pyplot"].get_fignums()
 
 

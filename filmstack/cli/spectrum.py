@@ -225,10 +225,12 @@ def _round_step(least: float) -> float:
 
 
 def _figure(parts: Sequence[Part], options: Options) -> Figure:
-    from filmstack.cli.spectrum_text import conditions
+    from filmstack.cli.spectrum_text import conditions, polarization_text
     from filmstack.report.spectrum_plot import Labelled, spectrum_figure
 
     labels = dict.fromkeys(material.label for part in parts for material in part.stack.materials)
+    if options.polarization != "all":
+        clauses.append(polarization_text(options.polarization))
     view: View = options.view or _usual_view(parts)
     notes = dict.fromkeys(note for part in parts for note in part.spectrum.notes)
     clauses = conditions(parts, options)

@@ -140,6 +140,11 @@ def conditions(parts: Sequence[Part], options: Options) -> list[str]:
     return lines
 
 
+def polarization_text(polarization: str) -> str:
+    """Return a choice of polarization in words, such as "s polarization"."""
+    return "unpolarized light (mean of s and p)" if polarization == "mean" else f"{polarization} polarization"
+
+
 def _columns(polarization: str, scale: str) -> list[str]:
     quantities = ("R", "T", "A", "log10_T") if scale == "od" else ("R", "T", "A")
     return [quantity + suffix for quantity in quantities for suffix in SUFFIXES[polarization]]

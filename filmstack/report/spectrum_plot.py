@@ -157,7 +157,7 @@ def draw_spectrum(spectrum: Spectrum, axes: Axes | None = None) -> Axes:
         axes.margins(x=0)
         axes.set_ylabel("R, T, A (%)" if "A" in quantities else "R, T (%)")
         axes.set_xlabel(_x_label([spectrum], view))
-        axes.set_title(f"T {spectrum.transmittance_into}", color=GREY, size=8)
+        axes.set_title(f"Unpolarized light. T is {spectrum.transmittance_into}.", color=GREY, size=8)
         label_lines(axes, lines, labels)
     return axes
 

@@ -207,7 +207,7 @@ def test_spectrum_draws_itself_on_given_axes():
     assert item.plot(axes) is axes
     assert len(data_lines(axes)) == 3
     assert axes.get_ylabel() == "R, T, A (%)"
-    assert axes.get_title(loc="left").startswith("T ")
+    assert axes.get_title(loc="left").startswith("Unpolarized light. T is into ")
 
 
 def test_two_spectra_share_axes():

@@ -229,14 +229,14 @@ def _figure(parts: Sequence[Part], options: Options) -> Figure:
     from filmstack.report.spectrum_plot import Labelled, spectrum_figure
 
     labels = dict.fromkeys(material.label for part in parts for material in part.stack.materials)
-    if options.polarization != "all":
-        clauses.append(polarization_text(options.polarization))
     view: View = options.view or _usual_view(parts)
     notes = dict.fromkeys(note for part in parts for note in part.spectrum.notes)
     clauses = conditions(parts, options)
     angles = {tuple(part.spectrum.angle_deg.tolist()) for part in parts}
     if len(angles) == 1 and len(next(iter(angles))) == 1:  # else the lines or an axis tell it
         clauses.append(f"angle of incidence {next(iter(angles))[0]:g} deg")
+    if options.polarization != "all":
+        clauses.append(polarization_text(options.polarization))
     return spectrum_figure(
         [Labelled(part.name, part.spectrum) for part in parts],
         view=view,

@@ -1,16 +1,26 @@
-"""Groups and sequences: what a person wrote -> one piece a layer, and back after thicknesses changed.
+"""From what a person wrote to a stack, and back: groups, sequences, quarter waves, names of materials.
 
-`files.design_file` -> here -> `filmstack.design`. Values stay plain: a material is still the text or
-table of the file, so that nothing is lost on the way back.
+`files.design_file` -> here -> `filmstack.design`. A layer of q quarter waves has the thickness
+q lambda / (4 kappa), kappa = sqrt(n^2 - (n0 sin theta)^2), with the real parts of the indices at the
+reference wavelength and angle. On the way back a material is still the text or table of the file.
 """
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping, Sequence
-from dataclasses import dataclass
+import json
+import math
+from collections.abc import Callable, Iterator, Mapping, Sequence
+from dataclasses import dataclass, replace
+from pathlib import Path
 from typing import Any, TypeAlias
 
+from filmstack.errors import ArgumentError, MaterialFileError, MaterialNotFoundError
+from filmstack.files.design_file import DesignFile, material_places
+from filmstack.files.design_keys import SIDES, side_entries
 from filmstack.files.sequence import Items, parse_sequence
+from filmstack.materials.material import Material
+from filmstack.materials.models.constant import constant
+from filmstack.stack import Layer, Plate, Stack
 
 Entry: TypeAlias = Mapping[str, Any]
 """One entry of a list of layers: a layer, a group or a sequence."""
@@ -139,3 +149,203 @@ def _refolded(
 def _written(piece: Piece, thickness_nm: float) -> dict[str, Any]:
     lock = {"locked": True} if piece.locked else {}
     return {"material": piece.material, "thickness_nm": float(thickness_nm), **lock}
+
+
+def stack_values(stack: Stack, name_of: Callable[[Material], Any]) -> dict[str, Any]:
+    """Return the values of a design file for a stack, a layer an entry.
+
+    Parameters
+    ----------
+    stack : Stack
+        With one thick plate at most.
+    name_of : callable
+        What the file says for a material.
+
+    Returns
+    -------
+    dict
+
+    Raises
+    ------
+    ArgumentError
+        If there are several plates.
+    """
+    media = {"incident": name_of(stack.incident)}
+    if not stack.plates:
+        return {**media, "substrate": name_of(stack.exit), "layer": _entries(stack.layers, name_of)}
+    if len(stack.plates) > 1:
+        found = f"got {len(stack.plates)} plates"
+        raise ArgumentError(f"design: expected a stack with one thick plate at most, as in a design file, {found}")
+    place = next(place for place, layer in enumerate(stack.layers) if isinstance(layer, Plate))
+    back = _entries(stack.layers[place + 1 :], name_of)
+    return {
+        **media,
+        "substrate": name_of(stack.plates[0].material),
+        "substrate_thickness_mm": stack.plates[0].thickness_mm,
+        "exit": name_of(stack.exit),
+        "layer": _entries(stack.layers[:place], name_of),
+        **({"back_layer": back} if back else {}),
+    }
+
+
+def _entries(layers: Sequence[Layer | Plate], name_of: Callable[[Material], Any]) -> list[dict[str, Any]]:
+    return [
+        {
+            "material": name_of(layer.material),
+            "thickness_nm": layer.thickness_nm,
+            **({"locked": True} if layer.locked else {}),
+        }
+        for layer in layers
+        if isinstance(layer, Layer)
+    ]
+
+
+def normal_wavenumber(material: Material, incident: Material, wavelength_nm: float, angle_deg: float) -> float:
+    """Return sqrt(n^2 - (n0 sin theta)^2) of the real parts of the indices, nan where light is evanescent.
+
+    Parameters
+    ----------
+    material, incident : Material
+        The film and the medium that the angle is measured in.
+    wavelength_nm : float
+        Vacuum wavelength. [nm]
+    angle_deg : float
+        Angle of incidence. [deg]
+
+    Returns
+    -------
+    float
+        The normal component of the wave vector over that in vacuum. [1]
+    """
+    n, n0 = (float(medium.index(wavelength_nm).real) for medium in (material, incident))
+    along = n0 * math.sin(math.radians(angle_deg))
+    return math.sqrt((n - along) * (n + along)) if n > along else math.nan
+
+
+def _identity(value: str | dict[str, float]) -> str:
+    """Return a text that is the same for all ways to write the same material."""
+    return value if isinstance(value, str) else json.dumps([float(value["n"]), float(value.get("k", 0.0))])
+
+
+class Media:
+    """The materials of a file: from what is written to `Material`, each made once.
+
+    Parameters
+    ----------
+    file : DesignFile
+        The file; what is wrong with its materials is added to its faults.
+    folder : Path
+        Where names of files start from.
+    """
+
+    def __init__(self, file: DesignFile, folder: Path) -> None:
+        self._file, self._folder, self._known = file, folder, dict[str, Material]()
+        self.faults = file.faults
+        own = file.written.get("materials")
+        self._own: Mapping[str, Any] = own if isinstance(own, dict) else {}
+        seen: set[str] = set()
+        for place, value in material_places(file.written):
+            name = _identity(value)
+            own = isinstance(value, str) and value in self._own and not place.startswith("materials.")
+            if name not in seen and not own:
+                seen.add(name)
+                self._resolve(place, value)
+
+    def __getitem__(self, value: str | dict[str, float]) -> Material:
+        """Return the material of a value that was read without a fault."""
+        if isinstance(value, str) and value in self._own:
+            value = self._own[value]
+        return self._known[_identity(value)]
+
+    def names(self) -> dict[Material, Any]:
+        """Return what the file says for each material, names of the person's own first."""
+        names: dict[Material, Any] = {self[name]: name for name in self._own}
+        for _, value in material_places(self._file.written):
+            names.setdefault(self[value], value)
+        return names
+
+    def check_reference(self, values: Mapping[str, Any]) -> None:
+        """Note each material in use whose data do not hold at the reference wavelength."""
+        wavelength = float(values["reference_wavelength_nm"])
+        used = [self[value] for place, value in material_places(values) if not place.startswith("materials.")]
+        for material in dict.fromkeys(used):
+            low, high = material.range_nm
+            if not low <= wavelength <= high:
+                self.faults.add(
+                    "reference_wavelength_nm",
+                    f"expected a wavelength inside the data of {material.label}, {low:g} to {high:g} nm, "
+                    f"got {wavelength:g} nm",
+                    "Choose another source of this material",
+                )
+        self.faults.raise_all()
+
+    def _resolve(self, place: str, value: str | dict[str, float]) -> None:
+        try:
+            self._known[_identity(value)] = self._made(value)
+        except (MaterialNotFoundError, MaterialFileError) as error:
+            fault = type(error)(f"{self.faults.file}: {place}: {error.where}", error.problem, error.advice)
+            self.faults.found.append(fault)
+
+    def _made(self, value: str | dict[str, float]) -> Material:
+        if isinstance(value, dict):
+            return constant(value["n"], value.get("k", 0.0))
+        from filmstack.materials.library import material
+
+        return material(value, folder=self._folder)
+
+
+def make_stack(values: Mapping[str, Any], media: Media) -> Stack:
+    """Return the stack of a design file, noting in the faults of `media` where a quarter wave has no thickness.
+
+    Parameters
+    ----------
+    values : mapping
+        Checked values of the file.
+    media : Media
+        Its materials.
+
+    Returns
+    -------
+    Stack
+    """
+    incident, substrate = media[values["incident"]], media[values["substrate"]]
+    front, back = (_films(values, side, media) for side in SIDES)
+    if "substrate_thickness_mm" not in values:
+        return Stack(incident, front, substrate)
+    plate = Plate(substrate, values["substrate_thickness_mm"])
+    return Stack(incident, [*front, plate, *back], media[values["exit"]])
+
+
+def _films(values: Mapping[str, Any], side: str, media: Media) -> list[Layer]:
+    """Return the films of one face, noting where a quarter wave has no thickness."""
+    pieces = expand(side_entries(values, side), values.get("letters", {}), side)
+    made: dict[Piece, Layer] = {}
+    films = []
+    for piece in pieces:
+        key = replace(piece, material=_identity(piece.material))
+        if key not in made:
+            made[key] = _film(piece, values, media)
+        films.append(made[key])
+    return films
+
+
+def _film(piece: Piece, values: Mapping[str, Any], media: Media) -> Layer:
+    material = media[piece.material]
+    if piece.thickness_nm is not None:
+        return Layer(material, piece.thickness_nm, piece.locked)
+    wavelength = float(values["reference_wavelength_nm"])
+    angle = float(values.get("reference_angle_deg", 0.0))
+    kappa = normal_wavenumber(material, media[values["incident"]], wavelength, angle)
+    if math.isnan(kappa):  # no quarter wave of an evanescent field
+        media.faults.add(
+            f"{piece.place}.quarter_waves",
+            f"expected a layer that light passes at the reference angle, but at {angle:g} degrees it is totally "
+            f"reflected by {material.label}",
+            "Write thickness_nm",
+        )
+        return Layer(material, 0.0)
+    thickness = (piece.quarter_waves or 0.0) * wavelength / (4.0 * kappa)
+    if math.isinf(thickness):
+        media.faults.add(f"{piece.place}.quarter_waves", f"expected a finite thickness, got {thickness:g} nm")
+        return Layer(material, 0.0)
+    return Layer(material, thickness, piece.locked)

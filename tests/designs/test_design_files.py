@@ -10,7 +10,8 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 import filmstack as fs
-from filmstack.files.design_file import DESIGN, help_text, read_design_file
+from filmstack.files.design_file import help_text, read_design_file
+from filmstack.files.design_keys import DESIGN
 from filmstack.files.toml_file import toml_text
 
 HEAD = """\
@@ -117,6 +118,22 @@ def test_materials_by_own_name_file_and_folder(design, tmp_path):
     assert [film.material.index(600.0).real for film in films] == pytest.approx([2.5, 1.25, 1.75, 1.75, 1.25], abs=1e-9)
     assert films[2].material is films[3].material
     assert films[1].material is films[4].material
+
+
+def test_an_own_name_may_be_that_of_the_library(design):
+    read = design(f"{HEAD}[materials]\nSiO2 = 'SiO2/bulk-1965'\n[[layer]]\nmaterial = 'SiO2'\nthickness_nm = 1\n")
+    assert read.stack.films[0].material is fs.material("SiO2/bulk-1965")
+    read = design(f"{HEAD}[materials]\nSiO2 = 'SiO2'\n[[layer]]\nmaterial = 'SiO2'\nthickness_nm = 1\n", "b.toml")
+    assert read.stack.films[0].material is fs.material("SiO2")
+
+
+def test_an_own_name_stands_for_no_other_own_name(design):
+    with pytest.raises(fs.MaterialNotFoundError, match=r"a\.toml: materials\.low: material 'mine': no such material"):
+        design(f"{HEAD}[materials]\nmine = {{ n = 1.4 }}\nlow = 'mine'\n")
+
+
+def test_a_material_that_is_not_used_may_lack_the_reference_wavelength(design):
+    assert design(f"{HEAD}[materials]\ncamera = 'Ge/crystal-2016'\n").stack.layers == ()
 
 
 def test_all_unknown_materials_are_told_with_their_place(design, tmp_path):
@@ -340,10 +357,46 @@ def test_a_design_made_in_python_is_written_and_read(tmp_path):
     assert complex(read.stack.films[0].material.index(600.0)) == 2.0 - 1e-3j
 
 
+def test_a_new_stack_keeps_the_names_of_the_design(design, tmp_path):
+    write_table(tmp_path / "materials", "mine.csv", 1.75)
+    text = (
+        f"{HEAD}[materials]\nhigh = {{ n = 2.5 }}\n[letters]\nH = {{ material = 'high', quarter_waves = 1 }}\n"
+        "L = { material = 'mine', quarter_waves = 1, locked = true }\n[[layer]]\nsequence = 'H L H'\n"
+    )
+    read = design(text)
+    high, low = read.stack.materials[1:3]
+    stack = fs.Stack(read.stack.incident, [fs.Layer(low, 10.0), fs.Layer(high, 20.0, locked=True)], read.stack.exit)
+    (tmp_path / "results").mkdir()
+    made = read.with_stack(stack)
+    fs.save_design(made, tmp_path / "b.toml")
+    fs.save_design(made.with_thickness([11.0, 21.0]), tmp_path / "results" / "c.toml")
+    written = tomllib.loads((tmp_path / "b.toml").read_text())
+    assert written["parent"] == "a.toml"
+    assert written["materials"] == {"high": {"n": 2.5}}
+    assert "letters" not in written
+    assert written["layer"] == [
+        {"material": "mine", "thickness_nm": 10.0},
+        {"material": "high", "thickness_nm": 20.0, "locked": True},
+    ]
+    written = tomllib.loads((tmp_path / "results" / "c.toml").read_text())
+    assert written["parent"] == "../a.toml"
+    assert written["layer"][0] == {"material": "../materials/mine.csv", "thickness_nm": 11.0}
+    again = fs.load_design(tmp_path / "results" / "c.toml")
+    assert again.stack.films[0].material.index(600.0).real == pytest.approx(1.75, abs=1e-9)
+
+
+def test_a_material_that_has_no_name_is_refused(tmp_path):
+    medium = fs.sellmeier([1.1], [0.01])
+    made = fs.Design("made", fs.Stack(fs.constant(1.0), [fs.Layer(medium, 1.0)], fs.constant(1.5)), 600.0)
+    with pytest.raises(fs.ArgumentError, match="expected a material of the library, of the design's own file, or"):
+        fs.save_design(made, tmp_path / "a.toml")
+    assert list(tmp_path.iterdir()) == []
+
+
 def test_two_plates_are_no_design_file(tmp_path):
     glass, air = fs.constant(1.5), fs.constant(1.0)
     stack = fs.Stack(air, [fs.Plate(glass, 1.0), fs.Plate(glass, 1.0)], air)
-    with pytest.raises(fs.ArgumentError, match="one thick plate at most"):
+    with pytest.raises(fs.ArgumentError, match="one thick plate at most, as in a design file, got 2 plates"):
         fs.save_design(fs.Design("two", stack, 600.0), tmp_path / "a.toml")
     assert list(tmp_path.iterdir()) == []
 

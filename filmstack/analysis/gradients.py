@@ -453,7 +453,7 @@ def needle_gradient(
         index=dict(asked.index) | {material: material.index(asked.wavelength_nm)[np.newaxis]},
     )
     n = cut_asked.at_points(material)
-    needle = Media((n[0][:, np.newaxis], n[1][:, np.newaxis]), asked.direction(), asked.k0)
+    needle = Media((n[0][:, np.newaxis], n[1][:, np.newaxis]), asked.direction(), asked.wavelength)
     groups, turned = cut_asked.groups(), cut_asked.reversed_groups()
     fronts: list[_Amplitudes] = []
     backs: list[_Amplitudes] = []

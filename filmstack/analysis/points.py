@@ -89,9 +89,9 @@ class Request:
         return self.angle_deg.shape[1], self.wavelength_nm.size
 
     @property
-    def k0(self) -> FloatArray:
-        """Vacuum wavenumber of each point, shape (point,). [1/nm]"""
-        return np.tile(2.0 * np.pi / self.wavelength_nm, self.shape[0])
+    def wavelength(self) -> FloatArray:
+        """Vacuum wavelength of each point, shape (point,). [nm]"""
+        return np.tile(self.wavelength_nm, self.shape[0])
 
     def at_points(self, material: Material) -> Pair:
         """Return N of a medium, shape (sample or 1, point), as a pair of reals."""
@@ -137,7 +137,7 @@ class Request:
         distinct = list(dict.fromkeys(film.material for film in films))
         pairs = [self.at_points(material) for material in distinct]
         samples = max((len(pair[0]) for pair in pairs), default=1)
-        points = self.k0.size
+        points = self.wavelength.size
         n = tuple(
             np.stack([np.broadcast_to(pair[part], (samples, points)) for pair in pairs], axis=1)
             if pairs
@@ -145,7 +145,7 @@ class Request:
             for part in (0, 1)
         )
         order = np.array([distinct.index(film.material) for film in films], dtype=np.int64)
-        return Group(Media((n[0], n[1]), ends.direction, self.k0), ends, order, np.ascontiguousarray(thickness))
+        return Group(Media((n[0], n[1]), ends.direction, self.wavelength), ends, order, np.ascontiguousarray(thickness))
 
 
 def split_at_plates(stack: Stack) -> list[list[Layer]]:

@@ -134,7 +134,7 @@ class Incoherent:
             )
             plates = self.request.stack.plates
             media = tuple((self.request.at_points(plate.material), plate.thickness_mm * 1e6) for plate in plates)
-            chain = PlateChain(crossings, media, self.request.k0)
+            chain = PlateChain(crossings, media, 2.0 * np.pi / self.request.wavelength)
             if any(np.any(gap < 0.0) for gap in chain.solved[2]):
                 raise ArgumentError(
                     "stack: the gain between its plates exceeds the loss: light builds up without end. Lower the gain"

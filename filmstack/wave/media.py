@@ -100,13 +100,18 @@ class Media:
         Refractive index N = nr + i ni of each distinct film medium. [1]
     direction : Direction
         Direction of the light.
-    k0 : ndarray, shape (point,)
-        Vacuum wavenumber 2 pi / lambda. [1/nm]
+    wavelength : ndarray, shape (point,)
+        Vacuum wavelength. [nm]
     """
 
     n: Pair
     direction: Direction
-    k0: FloatArray
+    wavelength: FloatArray
+
+    @cached_property
+    def k0(self) -> FloatArray:
+        """Vacuum wavenumber 2 pi / lambda. [1/nm]"""
+        return 2.0 * np.pi / self.wavelength
 
     @cached_property
     def _wavenumber(self) -> tuple[Pair, Pair]:
@@ -156,7 +161,7 @@ class Media:
 
         kr, ki = pick(self.kappa[0]), pick(self.kappa[1])
         k0 = self.k0[chosen]
-        quarters = (2.0 / np.pi) * kr * k0
+        quarters = 4.0 * kr / self.wavelength[chosen]
         zero = (kr == 0.0) & (ki == 0.0)
         with np.errstate(divide="ignore", invalid="ignore"):
             size = kr * kr + ki * ki

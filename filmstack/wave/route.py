@@ -166,7 +166,7 @@ def _picked(group: Group, sample: int, points: IntArray) -> Group:
     direction = media.direction.picked(sample, points)
     incident, leaving = (one(ends.incident[0]), one(ends.incident[1])), (one(ends.exit[0]), one(ends.exit[1]))
     return Group(
-        Media((one(media.n[0]), one(media.n[1])), direction, media.k0[points]),
+        Media((one(media.n[0]), one(media.n[1])), direction, media.wavelength[points]),
         Ends(incident, leaving, direction, ends.outer),
         group.order,
         group.thickness[min(sample, len(group.thickness) - 1)][np.newaxis],

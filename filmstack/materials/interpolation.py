@@ -238,9 +238,11 @@ def derivative_deviation(
     least-squares spline on the same knots. What the spline misses between rows is not included.
     """
     from scipy.interpolate import BSpline
+    from scipy.sparse import diags_array
+    from scipy.sparse.linalg import splu
 
-    weighted = BSpline.design_matrix(x, curve.knots, curve.degree).toarray() * (np.sqrt(3.0) / tolerance)[:, np.newaxis]
-    identity = np.eye(len(curve.coefficients))
-    rows = np.stack([SplineCurve(curve.knots, one).derivative(at, order) for one in identity], axis=-1)
-    triangle: FloatArray = np.linalg.qr(weighted).R
-    return np.asarray(np.linalg.norm(np.linalg.solve(triangle.T, rows.T), axis=0))
+    basis = BSpline.design_matrix(x, curve.knots, curve.degree)
+    information = basis.T @ diags_array(3.0 / tolerance**2) @ basis
+    rows = BSpline(curve.knots, np.eye(len(curve.coefficients)), curve.degree)(at, nu=order)
+    variance = np.einsum("ac,ca->a", rows, splu(information.tocsc()).solve(rows.T))
+    return np.asarray(np.sqrt(variance))

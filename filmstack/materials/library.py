@@ -14,7 +14,6 @@ from typing import TYPE_CHECKING
 
 from filmstack.errors import MaterialNotFoundError
 from filmstack.materials.material import Material, Provenance
-from filmstack.materials.models.registry import build_formula, entry_provenance, formula_entries
 from filmstack.materials.shipped import shipped_folder
 
 if TYPE_CHECKING:
@@ -26,7 +25,7 @@ DEFAULTS: Mapping[str, str] = {
     "SiO2": "SiO2/sputtered-2013",
     "TiO2": "TiO2/evaporated-2015",
     "Ta2O5": "Ta2O5/evaporated-2015",
-    "Nb2O5": "Nb2O5/sputtered-2024",
+    "Nb2O5": "Nb2O5/sputtered-2013",
     "HfO2": "HfO2/evaporated-2015",
     "Al2O3": "Al2O3/evaporated-2015",
     "Sc2O3": "Sc2O3/sputtered-2018",
@@ -49,7 +48,7 @@ DEFAULTS: Mapping[str, str] = {
     "GaN": "GaN/wurtzite-ordinary-1973",
     "TiN": "TiN/sputtered-2023",
     "ITO": "ITO/film-2024",
-    "ZnS": "ZnS/evaporated-2020",
+    "ZnS": "ZnS/evaporated-formula-2020",
     "ZnSe": "ZnSe/cvd-1984",
     "PbTe": "PbTe/crystal-1990",
     "CdTe": "CdTe/crystal-1964",
@@ -175,7 +174,7 @@ def material(
         return _user_table(path, path.resolve(), changed.st_mtime_ns, changed.st_size, allow_gain)
     if word in UNITY or word in DEFAULTS:
         return _shipped(DEFAULTS.get(word, word))
-    if _is_table(word) or word in formula_entries():
+    if _is_table(word) or _is_formula(word):
         return _shipped(word)
     raise _not_found(word, folder)
 
@@ -198,6 +197,7 @@ def list_materials() -> tuple[MaterialRecord, ...]:
 
 @cache
 def _records() -> tuple[MaterialRecord, ...]:
+    from filmstack.materials.models.registry import entry_provenance, formula_entries
     from filmstack.materials.tables import read_header, table_provenance
 
     tables = [table_provenance(read_header(path)) for path in sorted(shipped_folder("materials").glob("*.csv"))]
@@ -256,16 +256,24 @@ def _is_table(key: str) -> bool:
     return "/" in key and table_path(key).is_file()
 
 
+def _is_formula(key: str) -> bool:
+    from filmstack.materials.models.registry import formula_entries
+
+    return key in formula_entries()
+
+
 @cache
 def _shipped(key: str) -> Material:
-    from filmstack.materials.tables import shipped_table
-
     if key in UNITY:
         from filmstack.materials.models.constant import Constant
 
         return Constant(1.0, 0.0, _unity_provenance(key))
     if _is_table(key):  # asked first: reading all formula entries takes longer than reading one table
+        from filmstack.materials.tables import shipped_table
+
         return shipped_table(key)
+    from filmstack.materials.models.registry import build_formula, formula_entries
+
     return build_formula(key, formula_entries()[key])
 
 

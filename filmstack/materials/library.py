@@ -89,11 +89,11 @@ DEFAULTS: Mapping[str, str] = {
     "PDMS": "PDMS/bulk-2009",
     "water": "H2O/water-1973",
     "moist air": "air/moist-1996",
-    # metals: the lower-loss of the films measured as deposited, over the visible at least
+    # metals: the lower-loss of the films measured as deposited (Cu: of the evaluated data)
     "Ag": "Ag/evaporated-1972",
     "Al": "Al/evaporated-1995",
     "Au": "Au/evaporated-2012",
-    "Cu": "Cu/evaporated-1972",
+    "Cu": "Cu/re-evaluated-2015",
     "Cr": "Cr/evaporated-1974",
     "Ni": "Ni/evaporated-1974",
     "Ti": "Ti/evaporated-1974",

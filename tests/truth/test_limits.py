@@ -124,7 +124,8 @@ def test_incident_medium_with_a_small_k_is_lossless_and_says_so():
         one(fs.Stack(C(1.515, 2e-4), [], C(1.0)), 633.0)
     assert str(caught.value) == (
         "stack.incident: constant index 1.515 - 0.0002i: expected k <= 0.0001, got k = 0.0002 at 633 nm. In an "
-        "absorbing medium the incident and the reflected flux do not add up; choose a transparent one or narrow the wavelengths"
+        "absorbing medium the incident and the reflected flux do not add up; choose a transparent one or narrow the "
+        "wavelengths"
     )
 
 

@@ -13,7 +13,7 @@ from filmstack.constants import PLANCK_EV_NM
 from filmstack.errors import ArgumentError, MaterialRangeError
 from filmstack.materials.material import Material, Provenance
 from filmstack.materials.models.formula import from_square, given_or
-from filmstack.materials.series import Number, Series, log
+from filmstack.wave.series import Number, Series, log
 
 _GEHRSITZ_EV_UM = 1.239856
 _BOLTZMANN_EV = 0.0861708e-3

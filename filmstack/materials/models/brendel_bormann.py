@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 
 from filmstack.materials.material import Material, Provenance
 from filmstack.materials.models.formula import Formula, checked_numbers, from_permittivity, given_or, same_length
-from filmstack.materials.series import Number, faddeeva, sqrt
+from filmstack.wave.series import Number, faddeeva, sqrt
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike

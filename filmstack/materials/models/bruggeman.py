@@ -9,7 +9,7 @@ import numpy as np
 
 from filmstack.materials.material import Material
 from filmstack.materials.models.mixture import Mixture, checked_fractions
-from filmstack.materials.series import Number, Series, value
+from filmstack.wave.series import Number, Series, value
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike

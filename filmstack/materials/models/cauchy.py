@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 
 from filmstack.materials.material import Material, Provenance
 from filmstack.materials.models.formula import Formula, checked_numbers, given_or, same_length, wavelength_um
-from filmstack.materials.series import Number
+from filmstack.wave.series import Number
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike

@@ -6,7 +6,7 @@ from collections.abc import Sequence
 
 from filmstack.materials.material import Material, Provenance
 from filmstack.materials.models.formula import Formula, checked_numbers, from_permittivity, given_or
-from filmstack.materials.series import Number
+from filmstack.wave.series import Number
 
 
 class Drude(Formula):

@@ -15,7 +15,7 @@ import numpy as np
 from filmstack.constants import PLANCK_EV_NM
 from filmstack.errors import ArgumentError, MaterialRangeError
 from filmstack.materials.material import Material, Provenance
-from filmstack.materials.series import Number, Series, conjugate, sqrt, value
+from filmstack.wave.series import Number, Series, conjugate, sqrt, value
 
 if TYPE_CHECKING:
     from collections.abc import Sequence

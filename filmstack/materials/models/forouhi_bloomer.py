@@ -9,7 +9,7 @@ import numpy as np
 
 from filmstack.materials.material import Material, Provenance
 from filmstack.materials.models.formula import Formula, checked_numbers, given_or, same_length
-from filmstack.materials.series import Number, value, where
+from filmstack.wave.series import Number, value, where
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike

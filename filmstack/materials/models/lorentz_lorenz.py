@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 
 from filmstack.materials.material import Material
 from filmstack.materials.models.mixture import Mixture, checked_fractions
-from filmstack.materials.series import Number
+from filmstack.wave.series import Number
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from filmstack.materials.material import Material
 from filmstack.materials.models.mixture import Mixture, checked_fractions
-from filmstack.materials.series import Number
+from filmstack.wave.series import Number
 
 
 class MaxwellGarnett(Mixture):

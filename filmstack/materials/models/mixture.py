@@ -11,7 +11,7 @@ import numpy as np
 from filmstack.errors import ArgumentError
 from filmstack.materials.material import Material, Provenance
 from filmstack.materials.models.formula import checked_numbers, from_permittivity
-from filmstack.materials.series import Number, Series, conjugate
+from filmstack.wave.series import Number, Series, conjugate
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike

@@ -12,7 +12,7 @@ from filmstack.constants import PLANCK_EV_NM
 from filmstack.errors import ArgumentError, MaterialRangeError
 from filmstack.materials.material import Material, Provenance
 from filmstack.materials.models.formula import MICRON_EV, given_or
-from filmstack.materials.series import Number, Series
+from filmstack.wave.series import Number, Series
 
 if TYPE_CHECKING:
     from filmstack.arraytypes import ComplexArray, FloatArray

@@ -14,7 +14,7 @@ from filmstack.materials.models.formula import (
     same_length,
     wavelength_um,
 )
-from filmstack.materials.series import Number
+from filmstack.wave.series import Number
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike

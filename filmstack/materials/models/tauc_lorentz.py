@@ -9,7 +9,7 @@ import numpy as np
 
 from filmstack.materials.material import Material, Provenance
 from filmstack.materials.models.formula import Formula, checked_numbers, from_permittivity, given_or, same_length
-from filmstack.materials.series import Number, log, log_size, real, value, where
+from filmstack.wave.series import Number, log, log_size, real, value, where
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike

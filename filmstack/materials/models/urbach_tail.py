@@ -12,7 +12,7 @@ from filmstack.constants import PLANCK_EV_NM
 from filmstack.errors import ArgumentError
 from filmstack.materials.material import Material, Provenance
 from filmstack.materials.models.formula import checked_numbers, given_or
-from filmstack.materials.series import Series, exp
+from filmstack.wave.series import Series, exp
 
 if TYPE_CHECKING:
     from filmstack.arraytypes import ComplexArray, FloatArray

@@ -103,14 +103,13 @@ class Design:
     @property
     def quarter_waves(self) -> FloatArray:
         """Optical thickness of each film in quarter waves, shape (layer,); nan where light is evanescent. [1]"""
-        incident = self.stack.incident
-        return np.array(
-            [
-                4.0 * film.thickness_nm * self._wavenumber(film.material, incident) / self.reference_wavelength_nm
-                for film in self.stack.films
-            ],
-            dtype=float,
-        )
+        stack = self.stack
+        where = self.reference_wavelength_nm, self.reference_angle_deg
+        waves_per_nm = {
+            material: 4.0 * normal_wavenumber(material, stack.incident, *where) / self.reference_wavelength_nm
+            for material in stack.materials
+        }
+        return np.array([film.thickness_nm * waves_per_nm[film.material] for film in stack.films], dtype=float)
 
     @property
     def parent_name(self) -> str:
@@ -118,9 +117,6 @@ class Design:
         if self.parent:
             return str(self.parent)
         return str(self.written.values.get("parent", ""))
-
-    def _wavenumber(self, material: Material, incident: Material) -> float:
-        return normal_wavenumber(material, incident, self.reference_wavelength_nm, self.reference_angle_deg)
 
     def with_thickness(self, thickness_nm: ArrayLike) -> Design:
         """Return a design with other thicknesses, which names this one as its parent.

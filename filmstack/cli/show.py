@@ -7,6 +7,7 @@ from __future__ import annotations
 
 import argparse
 import math
+import textwrap
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
@@ -25,6 +26,8 @@ HELP = (
     "thickness in nm and in quarter waves at the reference wavelength and angle, share of all films. "
     "--plot draws the index profile, --keys lists the keys of a design file."
 )
+PAGE_WIDTH = 110
+"""Longest line of a description. [characters]"""
 
 
 @dataclass(frozen=True)
@@ -199,8 +202,8 @@ def page(design: Design) -> list[str]:
 
 
 def _description(design: Design) -> list[str]:
-    parent = [f"made from {design.parent_name}"] if design.parent_name else []
-    return [*design.description.strip().splitlines(), *parent]
+    lines = [part for line in design.description.strip().splitlines() for part in textwrap.wrap(line, PAGE_WIDTH)]
+    return [*lines, *([f"made from {design.parent_name}"] if design.parent_name else [])]
 
 
 def _reference(design: Design) -> str:

@@ -11,6 +11,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
+from matplotlib.collections import PolyCollection
 from matplotlib.patches import Patch
 
 from filmstack.errors import FilmstackError
@@ -26,7 +27,10 @@ if TYPE_CHECKING:
 
 MOST_DESIGNS = 6
 LEAST_DRAWN_K = 0.01
+MOST_HATCHED = 300
+"""Of more layers, each is too narrow for a hatching to be seen."""
 _HATCHES = ("", "////", "....", "\\\\\\\\", "xx", "--", "oo", "++")
+_LEGEND_LINE = 0.185  # inch
 _BORDER = 0.07  # part of the depth that is shown of the media before and behind
 
 
@@ -63,23 +67,33 @@ def profile_figure(designs: Sequence[Design]) -> Figure:
     rows = [faces(design) for design in designs]
     columns = max(map(len, rows))
     materials = list(dict.fromkeys(material for design in designs for material in design.stack.materials))
-    width = 5.4 if columns == 1 else 3.6
-    names = [material.key for material in materials]
-    margins = Margins(left=0.7, right=0.55 + 0.062 * max(map(len, names)), top=0.95, down=0.75, across=0.75)
-    print_below = [f"Materials: {'; '.join(material.label for material in materials)}."]
+    longest = max(len(material.key) for material in materials)
+    several = len(designs) > 1
+    margins = Margins(
+        left=0.7, right=0.55 + 0.062 * longest, top=0.75 + 0.18 * (columns > 1) + 0.18 * several, down=1.0, across=0.75
+    )
+    height = max(2.3, _LEGEND_LINE * len(materials) / len(designs))
+    small_print = [f"Materials: {'; '.join(material.label for material in materials)}."]
     with quiet_style():
-        figure, panels = panel_grid(len(designs), columns, panel=(width, 2.3), margins=margins, small_print=print_below)
+        figure, panels = panel_grid(
+            len(designs),
+            columns,
+            panel=(5.4 if columns == 1 else 3.6, height),
+            margins=margins,
+            small_print=small_print,
+            share_x=False,
+        )
         for row, design, panel_row in zip(rows, designs, panels, strict=True):
             for number, axes in enumerate(panel_row):
                 if number >= len(row):
                     axes.set_visible(False)
                     continue
-                name = design.name if len(designs) > 1 else ""
-                title = ": ".join(text for text in (name, row[number].title) if text)
+                name = design.name if several and number == 0 else ""
+                title = f"{name}\n{row[number].title}" if columns > 1 else name
                 draw_face(row[number], design.reference_wavelength_nm, materials, axes, title)
         _legend(figure, materials, margins)
         wavelengths = dict.fromkeys(f"{design.reference_wavelength_nm:g} nm" for design in designs)
-        title = designs[0].name if len(designs) == 1 else f"{len(designs)} designs compared"
+        title = f"{len(designs)} designs compared" if several else designs[0].name
         head_lines(figure, title, f"Refractive index at {', '.join(wavelengths)}; light from the left")
     return figure
 
@@ -151,14 +165,21 @@ def draw_face(face: Face, wavelength_nm: float, materials: Sequence[Material], a
     border = _BORDER * (depth[-1] or 100.0)
     edges = np.concatenate([[-border], depth, [depth[-1] + border]])
     media = [face.before, *(film.material for film in face.films), face.behind]
-    index = np.array([complex(medium.index(wavelength_nm)) for medium in media])
-    for left, right, n, medium in zip(edges[:-1], edges[1:], index.real, media, strict=True):
-        if right > left:
-            axes.bar(left, n, right - left, align="edge", **_fill(materials.index(medium)))
+    known = {medium: complex(medium.index(wavelength_nm)) for medium in set(media)}
+    index = np.array([known[medium] for medium in media])
+    hatched = len(media) <= MOST_HATCHED
+    tops = np.maximum(index.real, np.where(-index.imag > LEAST_DRAWN_K, -index.imag, 0.0))
+    for number, material in enumerate(materials):
+        boxes = [
+            [(left, 0.0), (left, top), (right, top), (right, 0.0)]
+            for left, right, top, medium in zip(edges[:-1], edges[1:], tops, media, strict=True)
+            if medium is material and right > left
+        ]
+        axes.add_collection(PolyCollection(boxes, **_fill(number, hatched)), autolim=False)
     axes.stairs(index.real, edges, baseline=None, color=INK, linewidth=1.1)
     if np.any(-index.imag > LEAST_DRAWN_K):
         axes.stairs(-index.imag, edges, baseline=None, color=INK, linewidth=1.1, linestyle=(0, (4, 1.5)))
-        axes.text(0.01, 0.97, "solid: n, dashed: k", transform=axes.transAxes, size=7.5, color=GREY, va="top")
+        axes.text(0.08, 0.97, "solid: n, dashed: k", transform=axes.transAxes, size=7.5, color=GREY, va="top")
     for end in (depth[0], depth[-1]):
         axes.axvline(end, color=GREY, linewidth=0.8, linestyle=(0, (1, 2)))
     axes.set_xlim(edges[0], edges[-1])
@@ -170,10 +191,10 @@ def draw_face(face: Face, wavelength_nm: float, materials: Sequence[Material], a
     axes.set_title(title, color=GREY)
 
 
-def _fill(number: int) -> dict[str, Any]:
+def _fill(number: int, hatched: bool = True) -> dict[str, Any]:
     """Colour and hatching of a material: 64 pairs differ."""
     style = line_style(number)["color"]
-    hatch = _HATCHES[(number + number // len(_HATCHES)) % len(_HATCHES)]
+    hatch = _HATCHES[(number + number // len(_HATCHES)) % len(_HATCHES)] if hatched else None
     return {"facecolor": (*_light(style), 1.0), "edgecolor": style, "hatch": hatch, "linewidth": 0.4}
 
 

@@ -111,7 +111,13 @@ def line_style(number: int) -> dict[str, Any]:
 
 
 def panel_grid(
-    rows: int, columns: int, *, panel: tuple[float, float], margins: Margins, small_print: Sequence[str] = ()
+    rows: int,
+    columns: int,
+    *,
+    panel: tuple[float, float],
+    margins: Margins,
+    small_print: Sequence[str] = (),
+    share_x: bool = True,
 ) -> tuple[Figure, AnyArray]:
     """Return a figure with a grid of panels of a given size, and small print below them.
 
@@ -125,11 +131,13 @@ def panel_grid(
         Room around and between the panels.
     small_print : sequence of str
         Paragraphs at the foot: materials and their sources, assumptions.
+    share_x : bool
+        The panels share the x axis of their column.
 
     Returns
     -------
     Figure, ndarray of Axes, shape (rows, columns)
-        The panels share the x axis of their column.
+        The panels.
     """
     width = margins.left + columns * panel[0] + (columns - 1) * margins.across + margins.right
     wrapped = [
@@ -142,7 +150,7 @@ def panel_grid(
         rows,
         columns,
         squeeze=False,
-        sharex="col",
+        sharex="col" if share_x else False,
         gridspec_kw={
             "left": margins.left / width,
             "right": 1.0 - margins.right / width,

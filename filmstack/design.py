@@ -19,7 +19,8 @@ from filmstack.errors import ArgumentError, FilmstackError
 from filmstack.expand import Media, expand, fold, make_stack, normal_wavenumber, stack_values
 from filmstack.files.atomic import atomic_writer
 from filmstack.files.design_file import in_order, read_design_file, with_materials
-from filmstack.files.design_keys import SIDES, VERSION, side_entries
+from filmstack.files.design_keys import DESIGN, SIDES, VERSION, side_entries
+from filmstack.files.kinds import WRONG, Faults
 from filmstack.files.toml_file import toml_text
 from filmstack.materials.material import Material
 from filmstack.materials.models.constant import Constant
@@ -46,16 +47,17 @@ class Written:
         Where names of files in it start from.
     names : mapping
         What the file says for each material.
+    stack : Stack, optional
+        The stack that the layers of the values stand for; None if they hold none.
+    reference : (float, float), optional
+        Wavelength [nm] and angle [deg] of their quarter waves.
     """
 
     values: Mapping[str, Any] = field(default_factory=dict)
     folder: Path = Path()
     names: Mapping[Material, Any] = field(default_factory=dict)
-
-    @property
-    def holds_the_layers(self) -> bool:
-        """The values are a whole design; else the layers are those of the stack."""
-        return "incident" in self.values
+    stack: Stack | None = None
+    reference: tuple[float, float] | None = None
 
 
 @dataclass(frozen=True, eq=False)
@@ -100,6 +102,21 @@ class Design:
     parent_sha256: str = ""
     written: Written = field(default_factory=Written)
 
+    def __post_init__(self) -> None:
+        if not isinstance(self.name, str) or not self.name.strip():
+            raise ArgumentError(f"Design.name: expected a text, got {self.name!r}")
+        if not isinstance(self.stack, Stack):
+            raise ArgumentError(f"Design.stack: expected a Stack, got {self.stack!r}")
+        checked = {
+            "reference_wavelength_nm": _checked("reference_wavelength_nm", self.reference_wavelength_nm),
+            "reference_angle_deg": _checked("reference_angle_deg", self.reference_angle_deg),
+            "incident_angle_deg": tuple(_checked("incident_angle_deg", angle) for angle in self.incident_angle_deg),
+        }
+        if not checked["incident_angle_deg"]:
+            raise ArgumentError("Design.incident_angle_deg: expected at least one angle, got none")
+        for name, value in checked.items():
+            object.__setattr__(self, name, value)
+
     @property
     def quarter_waves(self) -> FloatArray:
         """Optical thickness of each film in quarter waves, shape (layer,); nan where light is evanescent. [1]"""
@@ -138,10 +155,11 @@ class Design:
             If the number of values is not the number of films, or one is negative or not finite.
         """
         stack = self.stack.with_thickness(thickness_nm)
-        if not self.written.holds_the_layers:
-            return self._made_from(stack, self.written.values)
+        if not self._is_as_written():
+            return self.with_stack(stack)
         old, new = self.stack.thickness_nm.tolist(), stack.thickness_nm.tolist()
-        return self._made_from(stack, _refolded(self.written.values, old, new))
+        values = _refolded(self.written.values, old, new)
+        return self._made_from(stack, replace(self.written, values=values, stack=stack))
 
     def with_stack(self, stack: Stack) -> Design:
         """Return a design with another stack, which names this one as its parent.
@@ -157,8 +175,7 @@ class Design:
         -------
         Design
         """
-        head = {key: value for key, value in self.written.values.items() if key not in _OF_THE_STACK}
-        return self._made_from(stack, head)
+        return self._made_from(stack, replace(self.written, stack=None))
 
     def plot(self, ax: Axes | None = None) -> Axes:
         """Draw the index profile of the films before the plate on `ax`, or on a new figure."""
@@ -166,9 +183,24 @@ class Design:
 
         return draw_profile(self, ax)
 
-    def _made_from(self, stack: Stack, values: Mapping[str, Any]) -> Design:
-        made = replace(self, stack=stack, path=None, sha256="", written=replace(self.written, values=values))
+    def _made_from(self, stack: Stack, written: Written) -> Design:
+        made = replace(self, stack=stack, path=None, sha256="", written=written)
         return replace(made, parent=self.path, parent_sha256=self.sha256) if self.path else made
+
+    def _is_as_written(self) -> bool:
+        """Tell whether the layers that were written are those of the stack."""
+        reference = (self.reference_wavelength_nm, self.reference_angle_deg)
+        return self.written.stack is self.stack and self.written.reference == reference
+
+
+def _checked(name: str, value: float) -> float:
+    """Return a number of the file's kind, as the table of keys has it."""
+    faults = Faults("Design", ArgumentError)
+    kind = next(key.kind for key in DESIGN.keys if key.name == name)
+    number = float(value) if isinstance(value, int | float | np.number) and not isinstance(value, bool) else value
+    if kind.read(number, name, faults) is WRONG:
+        raise ArgumentError(str(faults.found[0]).replace(": ", ".", 1))  # "Design.name: expected ..."
+    return float(number)
 
 
 def _refolded(written: Mapping[str, Any], old: list[float], new: list[float]) -> dict[str, Any]:
@@ -213,16 +245,17 @@ def load_design(path: str | Path) -> Design:
     stack = make_stack(values, media)
     file.faults.raise_all()
     angles = values.get("incident_angle_deg", 0.0)
+    reference = float(values["reference_wavelength_nm"]), float(values.get("reference_angle_deg", 0.0))
     return Design(
         name=values["name"],
         stack=stack,
-        reference_wavelength_nm=float(values["reference_wavelength_nm"]),
-        reference_angle_deg=float(values.get("reference_angle_deg", 0.0)),
+        reference_wavelength_nm=reference[0],
+        reference_angle_deg=reference[1],
         incident_angle_deg=tuple(map(float, angles if isinstance(angles, list) else [angles])),
         description=values.get("description", ""),
         path=Path(path),
         sha256=file.sha256,
-        written=Written(values, Path(path).parent, media.names()),
+        written=Written(values, Path(path).parent, media.names(), stack, reference),
     )
 
 
@@ -269,29 +302,34 @@ def _values_to_write(design: Design, folder: Path) -> dict[str, Any]:
     values = {"filmstack": VERSION, **with_materials(written.values, move)}
     if "parent" in values:
         values["parent"] = _relative(written.folder / values["parent"], folder)
-    if not written.holds_the_layers:
-        values |= stack_values(design.stack, lambda material: move(_name_of(material, written)))
+    if not design._is_as_written():
+        head = {key: value for key, value in values.items() if key not in _OF_THE_STACK}
+        values = head | stack_values(design.stack, lambda material: move(_name_of(material, written)))
     if design.parent:
         values |= {"parent": _relative(design.parent, folder), "parent_sha256": design.parent_sha256}
-    return in_order({**values, **_head(design, values)})
+    return in_order(_with_head(values, design))
 
 
-def _head(design: Design, values: Mapping[str, Any]) -> dict[str, Any]:
-    """Return the values at the head of the file, as written where they still hold."""
+def _with_head(values: dict[str, Any], design: Design) -> dict[str, Any]:
+    """Return the values with name, wavelength and angles of the design, as written where they still hold."""
     angles = list(design.incident_angle_deg)
-    now = {
+    now: dict[str, Any] = {
         "name": design.name,
         "description": design.description,
         "reference_wavelength_nm": design.reference_wavelength_nm,
         "reference_angle_deg": design.reference_angle_deg,
-        "incident_angle_deg": angles[0] if len(angles) == 1 else angles,
+        "incident_angle_deg": angles,
     }
-    absent = {"description": "", "reference_angle_deg": 0.0, "incident_angle_deg": 0.0}
-    return {
-        key: value
-        for key, value in now.items()
-        if value != (values[key] if key in values else absent.get(key)) and values.get(key) != [value]
-    }
+    absent = {"description": "", "reference_angle_deg": 0.0, "incident_angle_deg": [0.0]}
+    for key, value in now.items():
+        before = values.get(key, absent.get(key))
+        if value in (before, [before]):
+            continue
+        if value == absent.get(key):
+            del values[key]
+        else:
+            values[key] = angles[0] if value is angles and len(angles) == 1 else value
+    return values
 
 
 def _mover(written: Written, folder: Path) -> Callable[[Any], Any]:

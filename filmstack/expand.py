@@ -283,7 +283,8 @@ class Media:
         try:
             self._known[_identity(value)] = self._made(value)
         except (MaterialNotFoundError, MaterialFileError) as error:
-            fault = type(error)(f"{self.faults.file}: {place}: {error.where}", error.problem, error.advice)
+            lines = [f"{self.faults.file}: {place}: {line}" for line in str(error).splitlines()]
+            fault = type(error)("\n".join(lines))
             self.faults.found.append(fault)
 
     def _made(self, value: str | dict[str, float]) -> Material:

@@ -3,6 +3,7 @@
 import hashlib
 import math
 import tomllib
+from dataclasses import replace
 
 import numpy as np
 import pytest
@@ -383,6 +384,59 @@ def test_a_new_stack_keeps_the_names_of_the_design(design, tmp_path):
     assert written["layer"][0] == {"material": "../materials/mine.csv", "thickness_nm": 11.0}
     again = fs.load_design(tmp_path / "results" / "c.toml")
     assert again.stack.films[0].material.index(600.0).real == pytest.approx(1.75, abs=1e-9)
+
+
+def test_changes_by_hand_are_written(design, tmp_path):
+    text = f"{HEAD}description = 'old'\nincident_angle_deg = [0, 45]\n{film(2.0, 'quarter_waves = 1')}"
+    read = design(text)
+    other = fs.Stack(read.stack.incident, [fs.Layer(fs.constant(3.0), 7.0)], read.stack.exit)
+    changes = [
+        ({"name": "new"}, {"name": "new", "description": "old", "incident_angle_deg": [0, 45]}),
+        ({"description": ""}, {"description": None}),
+        ({"incident_angle_deg": (0.0,)}, {"incident_angle_deg": None}),
+        ({"incident_angle_deg": (30.0,)}, {"incident_angle_deg": 30.0}),
+        # quarter waves of another wavelength are other thicknesses: the stack counts
+        ({"reference_wavelength_nm": 800.0}, {"layer": [{"material": {"n": 2.0}, "thickness_nm": 75.0}]}),
+        ({"stack": other}, {"layer": [{"material": {"n": 3.0}, "thickness_nm": 7.0}]}),
+    ]
+    for number, (change, expected) in enumerate(changes):
+        changed = replace(read, **change)
+        fs.save_design(changed, tmp_path / f"{number}.toml")
+        written = tomllib.loads((tmp_path / f"{number}.toml").read_text())
+        assert {key: written.get(key) for key in expected} == expected
+        again = fs.load_design(tmp_path / f"{number}.toml")
+        assert again.stack.thickness_nm.tolist() == changed.stack.thickness_nm.tolist()
+        assert (again.name, again.description) == (changed.name, changed.description)
+        assert again.incident_angle_deg == changed.incident_angle_deg
+        assert again.reference_wavelength_nm == changed.reference_wavelength_nm
+
+
+@pytest.mark.parametrize(
+    ("change", "message"),
+    [
+        ({"name": " "}, "Design.name: expected a text, got ' '"),
+        ({"stack": None}, "Design.stack: expected a Stack, got None"),
+        (
+            {"reference_wavelength_nm": -1.0},
+            "Design.reference_wavelength_nm: expected a wavelength > 0 nm, got -1 nm. Correct the sign",
+        ),
+        (
+            {"reference_wavelength_nm": "550"},
+            "Design.reference_wavelength_nm: expected a wavelength > 0 nm, got the text '550'. "
+            "Leave out the quotation marks",
+        ),
+        (
+            {"incident_angle_deg": (0.0, 91.0)},
+            "Design.incident_angle_deg: expected an angle from 0 to 90 degrees, got 91 degrees",
+        ),
+        ({"incident_angle_deg": ()}, "Design.incident_angle_deg: expected at least one angle, got none"),
+    ],
+)
+def test_a_wrong_design_in_python(change, message):
+    stack = fs.Stack(fs.constant(1.0), [], fs.constant(1.5))
+    with pytest.raises(fs.ArgumentError) as told:
+        fs.Design(**{"name": "a", "stack": stack, "reference_wavelength_nm": 550.0} | change)
+    assert str(told.value) == message
 
 
 def test_a_material_that_has_no_name_is_refused(tmp_path):

@@ -2,7 +2,7 @@
 
 import pytest
 
-from filmstack.cli.main import main
+from filmstack.cli.main import COMMANDS, main
 
 FORMS = "expected START:STOP:STEP, a list such as 450,550,650 or a file"
 ANGLES = "expected angles in degrees such as 45, 0,30,45 or 0:60:15"
@@ -10,7 +10,7 @@ HELP = "See filmstack spectrum --help"
 
 BAD_LINES = [
     ("spectum a.toml", "unknown command 'spectum'. Did you mean spectrum?"),
-    ("design a.toml", "unknown command 'design'. The commands are spectrum, show, materials"),
+    ("design a.toml", f"unknown command 'design'. The commands are {', '.join(COMMANDS)}"),
     ("--versoin", "unknown option --versoin. Did you mean --version?"),
     ("-x", "unknown option -x. See filmstack --help"),
     ("spectrum", f"spectrum: expected DESIGN, got none. {HELP}"),

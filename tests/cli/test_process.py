@@ -39,7 +39,7 @@ def test_help_tells_every_command(capsys):
     assert main([]) == main(["--help"]) == main(["-h"]) == 0
     told = capsys.readouterr().out
     for name, text in COMMANDS.items():
-        assert told.count(f"  {name}") == 3
+        assert told.count(f"\n  {name} ") == 3
         assert told.count(text) == 3
 
 

@@ -58,6 +58,8 @@ _WHERE = {
     "thickness_gradient": "analysis.gradients",
     "index_gradient": "analysis.gradients",
     "needle_gradient": "analysis.gradients",
+    "phase": "analysis.phase",
+    "Phase": "analysis.phase",
 }
 
 __all__ = ["__version__", *sorted(_WHERE)]

@@ -21,6 +21,7 @@ DONE, NOT_MET, WRONG_INPUT, INTERRUPTED = 0, 1, 2, 130
 
 COMMANDS = {
     "spectrum": "reflectance, transmittance and absorptance of designs over wavelength and angle",
+    "phase": "phase, group delay, GDD and TOD of a design",
     "show": "the layers of a design as a table, and its index profile as a plot",
     "materials": "list the materials, print n and k, judge a table of your own",
 }

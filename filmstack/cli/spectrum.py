@@ -135,7 +135,7 @@ def _part(design: Design, path: str, name: str, options: Options) -> Part:
     from filmstack.analysis.spectrum import spectrum
 
     stack = with_back_face(design.stack, options.back_face, path)
-    wavelength, remarks = _wavelengths(design, stack, options)
+    wavelength, remarks = default_wavelengths(design, stack, options)
     angle = options.angle or {"angle": _steps(0, 90), "map": _steps(0, 80)}.get(options.view)
     lit = stack if options.side == "front" else stack.reversed()
     result = spectrum(lit, wavelength, angle or design.incident_angle_deg)
@@ -183,12 +183,12 @@ def with_back_face(stack: Stack, face: str, where: str) -> Stack:
     return Stack(stack.incident, stack.layers[: plates[-1] + 1], stack.exit)
 
 
-def _wavelengths(design: Design, stack: Stack, options: Options) -> tuple[Sequence[float], tuple[str, ...]]:
+def default_wavelengths(design: Design, stack: Stack, options: Options) -> tuple[Sequence[float], tuple[str, ...]]:
     """Return what was asked for, or a default and what it is in words."""
     if options.wavelength:
         return options.wavelength, ()
     reference = design.reference_wavelength_nm
-    if options.view == "angle":
+    if getattr(options, "view", None) == "angle":
         return (reference,), (f"wavelength: {reference:g} nm, the reference wavelength, as --wavelength was not given",)
     low, high = SHORTEST * reference, LONGEST * reference
     data_low = max(stack.materials, key=lambda material: material.range_nm[0])

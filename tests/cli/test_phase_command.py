@@ -44,7 +44,7 @@ def test_delay_of_a_spacer(design, tmp_path, capsys):
     text = capsys.readouterr().out
     assert "transmitted light, from the first to the last interface" in text
     assert "50.0346" in text
-    rows = list(csv.DictReader(table.open(encoding="utf-8")))
+    rows = list(csv.DictReader(table.read_text(encoding="utf-8").splitlines()))
     assert len(rows) == 3
     assert float(rows[1]["t_gd_fs_s"]) == pytest.approx(1.5 * 1e4 / 299.792458, rel=1e-12)
     assert picture.stat().st_size > 10_000

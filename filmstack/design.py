@@ -100,17 +100,18 @@ class Design:
     sha256: str = ""
     parent: Path | None = None
     parent_sha256: str = ""
-    written: Written = field(default_factory=Written)
+    written: Written = field(default_factory=Written, repr=False)
 
     def __post_init__(self) -> None:
         if not isinstance(self.name, str) or not self.name.strip():
             raise ArgumentError(f"Design.name: expected a text, got {self.name!r}")
         if not isinstance(self.stack, Stack):
             raise ArgumentError(f"Design.stack: expected a Stack, got {self.stack!r}")
+        angles = self.incident_angle_deg if np.iterable(self.incident_angle_deg) else (self.incident_angle_deg,)
         checked = {
             "reference_wavelength_nm": _checked("reference_wavelength_nm", self.reference_wavelength_nm),
             "reference_angle_deg": _checked("reference_angle_deg", self.reference_angle_deg),
-            "incident_angle_deg": tuple(_checked("incident_angle_deg", angle) for angle in self.incident_angle_deg),
+            "incident_angle_deg": tuple(_checked("incident_angle_deg", angle) for angle in angles),
         }
         if not checked["incident_angle_deg"]:
             raise ArgumentError("Design.incident_angle_deg: expected at least one angle, got none")
@@ -138,7 +139,8 @@ class Design:
     def with_thickness(self, thickness_nm: ArrayLike) -> Design:
         """Return a design with other thicknesses, which names this one as its parent.
 
-        Entries of the file whose thicknesses stay are kept as written; what changes is written in nm.
+        Entries of the file whose thicknesses stay are kept as written; what changes is written in nm. The
+        description stays behind, for what it promises holds for the parent only.
 
         Parameters
         ----------
@@ -164,7 +166,7 @@ class Design:
     def with_stack(self, stack: Stack) -> Design:
         """Return a design with another stack, which names this one as its parent.
 
-        All layers are then written out in nm; materials of this design keep their names.
+        The description stays behind. All layers are then written out in nm; materials keep their names.
 
         Parameters
         ----------
@@ -184,7 +186,7 @@ class Design:
         return draw_profile(self, ax)
 
     def _made_from(self, stack: Stack, written: Written) -> Design:
-        made = replace(self, stack=stack, path=None, sha256="", written=written)
+        made = replace(self, stack=stack, description="", path=None, sha256="", written=written)
         return replace(made, parent=self.path, parent_sha256=self.sha256) if self.path else made
 
     def _is_as_written(self) -> bool:

@@ -187,7 +187,7 @@ class Named:
 
 
 def help_lines(keys: Sequence[Key], indent: str = "  ") -> list[str]:
-    """Return a line a key: its name, what is expected, what it means.
+    """Return a line a key: its name, what it means, what is expected.
 
     Parameters
     ----------
@@ -202,6 +202,6 @@ def help_lines(keys: Sequence[Key], indent: str = "  ") -> list[str]:
     """
     width = max(len(key.name) for key in keys)
     return [
-        f"{indent}{key.name:<{width}}  {key.kind.expected}{' (required)' if key.required else ''}: {key.help}"
+        f"{indent}{key.name:<{width}}  {key.help} ({key.kind.expected}{'; required' if key.required else ''})"
         for key in keys
     ]

@@ -461,7 +461,7 @@ def test_the_help_tells_every_key_of_the_table():
         (line,) = [line for line in told.split("\n\n")[0].splitlines() if line.split()[:1] == [key.name]]
         assert key.help in line
         assert key.kind.expected in line
-        assert ("(required)" in line) == key.required
+        assert line.endswith("; required)") == key.required
     required = [key.name for key in DESIGN.keys if key.required]
     assert required == ["filmstack", "name", "reference_wavelength_nm", "incident", "substrate"]
 

@@ -47,9 +47,9 @@ class Faults:
         return WRONG
 
     def raise_all(self) -> None:
-        """Raise one error that tells all faults, if there are any."""
+        """Raise one error that tells all faults, each once, if there are any."""
         if self.found:
-            raise all_faults(self.found)
+            raise all_faults(list({str(fault): fault for fault in self.found}.values()))
 
 
 class Kind(Protocol):

@@ -7,7 +7,7 @@ from dataclasses import replace
 
 import numpy as np
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 import filmstack as fs
@@ -50,6 +50,43 @@ def test_the_stack_of_a_simple_file(design):
     assert [film.locked for film in stack.films] == [False, True]
     assert [complex(medium.index(500.0)) for medium in (stack.incident, stack.exit)] == [1.0, 1.5]
     assert stack.plates == ()
+
+
+FOUR_LAYERS = """\
+filmstack = 1
+name = "four-layer window"
+reference_wavelength_nm = 550
+reference_angle_deg = 0
+incident = "air"
+substrate = "SiO2/bulk-1965"
+substrate_thickness_mm = 2.0    # a thick plate
+exit = "air"
+
+[[layer]]
+material = "TiO2"
+thickness_nm = 12.4
+
+[[layer]]
+repeat = 2
+layers = [{material = "SiO2", quarter_waves = 0.62, locked = true}, {material = "TiO2", thickness_nm = 7}]
+"""
+
+
+def test_materials_of_the_library(design):
+    stack = design(FOUR_LAYERS).stack
+    titania, silica = fs.material("TiO2"), fs.material("SiO2")
+    assert [film.material for film in stack.films] == [titania, silica, titania, silica, titania]
+    assert stack.incident is stack.exit is fs.material("air")
+    assert stack.plates[0].material is fs.material("SiO2/bulk-1965")
+    waves = 0.62 * 550 / 4 / silica.index(550.0).real
+    assert stack.thickness_nm.tolist() == pytest.approx([12.4, waves, 7.0, waves, 7.0], rel=1e-14)
+
+
+def test_the_same_fault_is_told_once(design):
+    letters = "[letters]\nM = { material = { n = 0.05, k = 3 }, quarter_waves = 1 }\n"
+    with pytest.raises(fs.DesignFileError) as told:
+        design(f"{HEAD}reference_angle_deg = 45\nsequence = 'M 0.5M 2M'\n{letters}")
+    assert str(told.value).count("letters.M.quarter_waves") == 1
 
 
 def test_a_plate_with_films_on_both_faces(design):
@@ -237,6 +274,7 @@ def same(left, right):
     return type(left) is type(right) and left == right
 
 
+@settings(deadline=None)
 @given(design_values())
 def test_text_and_values_are_the_same_thing(values):
     assert same(tomllib.loads(toml_text(values)), _without_empty_lists_moved(values))
@@ -255,6 +293,7 @@ def _without_empty_lists_moved(values):
 _IN_LINE = ("incident", "substrate", "exit")
 
 
+@settings(deadline=None)  # files are written
 @given(design_values(), st.randoms())
 def test_a_design_read_from_a_file_is_written_as_it_was(tmp_path_factory, values, random):
     folder = tmp_path_factory.mktemp("round")
@@ -272,6 +311,7 @@ def test_a_design_read_from_a_file_is_written_as_it_was(tmp_path_factory, values
     assert (folder / "c.toml").read_bytes() == (folder / "b.toml").read_bytes()
 
 
+@settings(deadline=None)  # files are written
 @given(design_values(), st.randoms())
 def test_new_thicknesses_come_back_to_the_last_bit(tmp_path_factory, values, random):
     folder = tmp_path_factory.mktemp("thickness")

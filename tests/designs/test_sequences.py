@@ -1,7 +1,7 @@
 """Groups and sequences against expansions that are plainly right."""
 
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from filmstack.expand import expand, fold
@@ -84,6 +84,7 @@ def trees(draw, depth=3):
     return text, layers
 
 
+@settings(deadline=None)
 @given(trees())
 def test_any_sequence_stands_for_its_layers(tree):
     text, layers = tree
@@ -92,6 +93,7 @@ def test_any_sequence_stands_for_its_layers(tree):
     assert [waves for _, waves in spelled] == pytest.approx([waves for _, waves in layers], rel=1e-14)
 
 
+@settings(deadline=None)
 @given(st.text(alphabet="HL()^0123456789. /", max_size=12))
 def test_any_text_is_a_sequence_or_has_one_clear_fault(text):
     try:

@@ -242,10 +242,12 @@ def test_the_half_wave_of_the_three_layers_is_absent_at_the_reference():
     # Two quarter waves, n1 outer: R = ((n0 n2^2 - ns n1^2)/(n0 n2^2 + ns n1^2))^2 (Macleod, chapter on
     # antireflection coatings; from memory).
     stack = load("three-layer-antireflection").stack
-    outer, _, inner = (index_at(film.material, 520.0) for film in stack.films)
-    ns = index_at(stack.exit, 520.0)
+    outer, _, inner = (index_at(film.material, 515.0) for film in stack.films)
+    ns = index_at(stack.exit, 515.0)
     expected = ((inner**2 - ns * outer**2) / (inner**2 + ns * outer**2)) ** 2
-    assert fs.spectrum(stack, 520.0).R[0, 0] == pytest.approx(expected, rel=1e-9)
+    absorbed = fs.spectrum(stack, 515.0).A[0, 0]
+    assert absorbed < 2e-8
+    assert fs.spectrum(stack, 515.0).R[0, 0] == pytest.approx(expected, abs=absorbed)
 
 
 def test_the_v_coat_has_the_phases_of_the_closed_form():

@@ -126,14 +126,30 @@ GROUP = (
 SEQUENCE = (Key("sequence", _Sequence(), "layers in the textbooks' way of writing; the letters stand in [letters]"),)
 """Key of a sequence in the place of a layer."""
 
-ENTRY: Kind = Table("a layer", [Key(key.name, key.kind, key.help) for key in (*LAYER, *GROUP, *SEQUENCE)], _one_shape)
+ENTRY: Kind = Table(
+    "a layer",
+    [Key(key.name, key.kind, key.help) for key in (*LAYER, *GROUP, *SEQUENCE)],
+    _one_shape,
+    lambda name: _design_key_advice(name),
+)
 _SHAPES = {
     "material": _Shape("a layer", frozenset(key.name for key in LAYER)),
     "layers": _Shape("a group", frozenset(key.name for key in GROUP), "Write it in each layer of the group"),
     "sequence": _Shape("a sequence", frozenset(key.name for key in SEQUENCE), "Write it in the letters"),
 }
 _ENTRY_KEYS = [key.name for key in (*LAYER, *GROUP, *SEQUENCE)]
-_LETTER = Table("a letter", LAYER, _one_thickness)
+_LETTER = Table("a letter", LAYER, _one_thickness, lambda name: _design_key_advice(name))
+
+
+def _design_key_advice(name: str) -> str:
+    """Advice on a key of the design in a layer: in TOML all keys below a heading belong to it."""
+    misplaced = any(key.name == name for key in DESIGN.keys)
+    return "It is a key of the design: write it above the first heading in brackets" if misplaced else ""
+
+
+def _layer_key_advice(name: str) -> str:
+    misplaced = name in _ENTRY_KEYS
+    return "It is a key of a layer: write it below [[layer]]" if misplaced else ""
 
 
 def _is_letter(name: str) -> bool:
@@ -292,6 +308,7 @@ DESIGN = Table(
         ),
     ),
     _whole_file,
+    _layer_key_advice,
 )
 """All keys of a design file, in the order in which they are written."""
 

@@ -48,11 +48,14 @@ class Table:
         The keys it may have, in the order in which they are written.
     rule : callable, optional
         Check of several keys together: called as ``rule(values, where, faults)`` with the values that are right.
+    elsewhere : callable, optional
+        Advice on a key that belongs into another table, or an empty text.
     """
 
     what: str
     keys: Sequence[Key]
     rule: Callable[[Mapping[str, Any], str, Faults], None] | None = None
+    elsewhere: Callable[[str], str] = lambda name: ""
 
     @property
     def expected(self) -> str:
@@ -83,7 +86,9 @@ class Table:
         left = [name for name in known if name not in value]
         meant: set[str] = set()
         for name in value:
-            if name not in known:
+            if name not in known and self.elsewhere(name):
+                faults.add(f"{dot}{name}", f"not a key of {self.what}", self.elsewhere(name))
+            elif name not in known:
                 hint = nearest(name, left, "")
                 faults.add(f"{dot}{name}", f"unknown key of {self.what}", hint or f"The keys are {', '.join(known)}")
                 meant |= {key for key in left if hint == nearest(key, [key], "")}

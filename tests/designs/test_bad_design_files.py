@@ -222,6 +222,18 @@ BAD = [
             "is totally reflected by constant index 0.05 - 3.3i. Write thickness_nm"
         ],
     ),
+    # keys in the wrong table
+    (
+        f"{HEAD}{LAYER}thickness_nm = 10\nincident_angle_deg = 45\n",
+        [
+            "layer[1].incident_angle_deg: not a key of a layer. "
+            "It is a key of the design: write it above the first heading in brackets"
+        ],
+    ),
+    (
+        f"{HEAD}thickness_nm = 10\n",
+        ["thickness_nm: not a key of a design. It is a key of a layer: write it below [[layer]]"],
+    ),
     # groups
     (f"{HEAD}[[layer]]\nrepeat = 3\n", ["layer[1].layers: expected a list of layers (a list of tables), got none"]),
     (f"{HEAD}[[layer]]\nlayers = []\n", ["layer[1].layers: expected a list of layers, got an empty list"]),

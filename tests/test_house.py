@@ -190,7 +190,8 @@ def test_a_command_loads_what_it_needs(words, allowed, tmp_path):
 def tracked_files():
     listed = subprocess.run(["git", "ls-files"], capture_output=True, text=True, cwd=REPOSITORY, check=False)
     if listed.returncode != 0:  # not a clone, such as an unpacked source archive
-        return [path for path in REPOSITORY.rglob("*") if path.is_file() and ".git" not in path.parts]
+        files = [path for path in REPOSITORY.rglob("*") if path.is_file()]
+        return [path for path in files if not path.relative_to(REPOSITORY).parts[0].startswith(".")]
     return [path for line in listed.stdout.splitlines() if (path := REPOSITORY / line).is_file()]
 
 

@@ -210,10 +210,10 @@ def label_lines(axes: Axes, lines: Sequence[Line2D], labels: Sequence[str]) -> N
     figure = axes.get_figure(root=True)
     place = axes.get_position()
     width, height = (figure.get_size_inches() if figure is not None else np.ones(2)) * (place.width, place.height)
-    low, high = axes.get_ylim()
-    left, right = axes.get_xlim()
-    stops = [(_last_finite(line.get_xdata()) - left) / (right - left) for line in lines]
-    ends = np.clip([(_last_finite(line.get_ydata()) - low) / (high - low) for line in lines], 0.0, 1.0)
+    inside = axes.transLimits.transform(  # parts of the panel, on a logarithmic scale too
+        [axes.transScale.transform((_last_finite(line.get_xdata()), _last_finite(line.get_ydata()))) for line in lines]
+    )
+    stops, ends = inside[:, 0], np.clip(inside[:, 1], 0.0, 1.0)
     places = _spread(ends, np.full(len(labels), 8.0 * 1.2 / 72.0 / height))
     start, stop = 1.0 + 0.12 / width, 1.0 + 0.4 / width
     for line, label, last, end, level in zip(lines, labels, stops, ends, places, strict=True):

@@ -12,7 +12,8 @@ import filmstack as fs
 from filmstack.materials.library import DEFAULTS, UNITY, list_materials
 
 # n at a wavelength, as handbooks and catalogues print it: a default must be the material that people mean.
-# Films: table of nominal indices (shipped standards, origin "table"), which vary with the process (HfO2 and Y2O3: dense films lie 8 % above).
+# Films: table of nominal indices (shipped standards, origin "table"), which vary with the process; dense films of
+# HfO2 and Y2O3 lie 8 % above.
 NOMINAL_FILMS = [
     ("SiO2", 550, 1.46), ("TiO2", 600, 2.29), ("Ta2O5", 550, 2.09), ("Nb2O5", 600, 2.22), ("HfO2", 500, 1.95),
     ("Al2O3", 500, 1.65), ("Sc2O3", 550, 1.89), ("ZrO2", 400, 2.10), ("MgF2", 550, 1.38), ("ZnS", 550, 2.35),

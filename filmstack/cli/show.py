@@ -194,7 +194,7 @@ def page(design: Design) -> list[str]:
     from filmstack.cli.output import format_table, material_lines
 
     rows = film_rows(design)
-    headings = ["layer", "from\nsubstrate", "material", "thickness\nnm", "quarter\nwaves", "share\n%", "locked"]
+    headings = ["layer", "from\nsubstrate", "material", "thickness\nnm", "quarter\nwaves", "share\n%", "remark"]
     lines = [f"{design.name} ({design.path})", *_description(design), _reference(design), ""]
     lines += format_table(headings, _cells(design, rows), left=(2, 6))
     lines += ["", *format_table(["films of", "layers", "thickness\nnm", "share\n%"], _total_cells(rows), left=(0,))]
@@ -235,7 +235,7 @@ def _film(row: Row) -> list[str]:
 
 
 def _medium(material: Material, role: str) -> list[str]:
-    return ["", "", f"{material.label}: {role}", "", "", "", ""]
+    return ["", "", material.label, "", "", "", role]
 
 
 def _substrate(design: Design) -> Material:

@@ -66,17 +66,17 @@ part (part.toml)
 two faces
 quarter waves at 600 nm and 0 deg; angle of incidence 0, 45 deg where no other is asked for
 
-            from                                         thickness  quarter  share
-layer  substrate  material                                      nm    waves      %  locked
------  ---------  -------------------------------------  ---------  -------  -----  ------
-                  air: incident medium
-    1          4  constant index 2                          75.000   1.0000  15.00
-    2          3  constant index 1.5                        50.000   0.5000  10.00  locked
-    3          2  constant index 2                          75.000   1.0000  15.00
-    4          1  constant index 1.5                        50.000   0.5000  10.00  locked
-                  constant index 1.5: substrate, 1.5 mm
-    5          1  constant index 2                         250.000   3.3333  50.00
-                  air: exit medium
+            from                      thickness  quarter  share
+layer  substrate  material                   nm    waves      %  remark
+-----  ---------  ------------------  ---------  -------  -----  -----------------
+                  air                                            incident medium
+    1          4  constant index 2       75.000   1.0000  15.00
+    2          3  constant index 1.5     50.000   0.5000  10.00  locked
+    3          2  constant index 2       75.000   1.0000  15.00
+    4          1  constant index 1.5     50.000   0.5000  10.00  locked
+                  constant index 1.5                             substrate, 1.5 mm
+    5          1  constant index 2      250.000   3.3333  50.00
+                  air                                            exit medium
 
                             thickness   share
 films of            layers         nm       %
@@ -97,7 +97,7 @@ def test_a_film_without_quarter_waves_and_without_thickness(folder, capsys):
     assert main(["show", "metal.toml"]) == 0
     lines = [" ".join(line.split()) for line in capsys.readouterr().out.splitlines()]
     assert "1 1 constant index 0.05 - 4i 0.000 evanescent 0.00" in lines
-    assert "constant index 1.5: substrate, semi-infinite" in lines
+    assert "constant index 1.5 substrate, semi-infinite" in lines
     assert "all 1 0.000 0.00" in lines
 
 

@@ -203,7 +203,17 @@ def page(design: Design) -> list[str]:
 
 def _description(design: Design) -> list[str]:
     lines = [part for line in design.description.strip().splitlines() for part in textwrap.wrap(line, PAGE_WIDTH)]
-    return [*lines, *([f"made from {design.parent_name}"] if design.parent_name else [])]
+    return [*lines, *([f"made from {design.parent_name}{_parent_state(design)}"] if design.parent_name else [])]
+
+
+def _parent_state(design: Design) -> str:
+    """Tell if the parent is no longer the file that the design was made from."""
+    from hashlib import sha256
+
+    parent, recorded = design.written.folder / design.parent_name, design.written.values.get("parent_sha256")
+    if not parent.is_file():
+        return ", which is not there"
+    return ", which has changed since" if recorded and sha256(parent.read_bytes()).hexdigest() != recorded else ""
 
 
 def _reference(design: Design) -> str:

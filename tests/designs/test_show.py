@@ -123,8 +123,16 @@ def test_json_tells_the_same(folder, capsys):
 def test_a_result_tells_what_it_was_made_from(folder, capsys):
     design = fs.load_design("part.toml")
     fs.save_design(design.with_thickness(design.stack.thickness_nm * 1.01), "result.toml")
-    assert main(["show", "result.toml"]) == 0
-    assert capsys.readouterr().out.splitlines()[1] == "made from part.toml"
+    changes = [
+        ("part.toml", PART, "made from part.toml"),
+        ("part.toml", PART.replace("two faces", "other"), "made from part.toml, which has changed since"),
+        ("gone.toml", PART, "made from part.toml, which is not there"),
+    ]
+    for name, text, line in changes:
+        (folder / "part.toml").rename(folder / name)
+        (folder / name).write_text(text)
+        assert main(["show", "result.toml"]) == 0
+        assert capsys.readouterr().out.splitlines()[1] == line
 
 
 def test_keys_are_listed(capsys):

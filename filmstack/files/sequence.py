@@ -12,7 +12,6 @@ from dataclasses import dataclass
 from typing import TypeAlias
 
 MOST_NESTED = 50
-_BEHIND_FACTOR = "expected a letter or a parenthesis behind the factor"
 _ADVICE = {
     "^": "Write a whole number and a blank behind ^",
     "/": "Write half a layer as 0.5H",
@@ -86,41 +85,71 @@ def parse_sequence(text: str) -> Items:
     >>> [item.body for item in parse_sequence("2(H L) L")]
     [(Item(body='H', factor=1.0, power=1), Item(body='L', factor=1.0, power=1)), 'L']
     """
-    levels = [_Open(0, 1.0, [])]
-    factor: float | None = None
-    factor_place = 0
-    powered = True  # a power may follow a letter or a parenthesis only, once
+    reader = _Reader()
     for place, kind, word in _words(text):
-        items = levels[-1].items
+        reader.take(place, kind, word)
+    return reader.end()
+
+
+class _Reader:
+    """Takes the words of a sequence one by one and builds its tree."""
+
+    def __init__(self) -> None:
+        self._levels = [_Open(0, 1.0, [])]
+        self._factor: tuple[int, float] | None = None  # place and value, until its letter comes
+        self._may_be_powered = False
+
+    def take(self, place: int, kind: str, word: str) -> None:
+        """Take one word."""
         if kind == "power":
-            if powered or factor is not None:
-                raise SequenceError(place, "expected a letter or a parenthesis before the power", "")
-            items[-1] = Item(items[-1].body, items[-1].factor, _power(word, place))
-            powered = True
-            continue
-        if kind == "factor":
-            if factor is not None:
-                raise SequenceError(place, f"{_BEHIND_FACTOR}, got {word}")
-            factor, factor_place = _factor(word, place), place
-            continue
-        if word == "(":
-            if len(levels) > MOST_NESTED:
+            self._take_power(place, word)
+        elif kind == "factor":
+            self._refuse_after_factor(place, word)
+            self._factor = (place, _factor(word, place))
+        elif word == "(":
+            if len(self._levels) > MOST_NESTED:
                 raise SequenceError(place, f"expected at most {MOST_NESTED} parentheses in one another")
-            levels.append(_Open(place, factor or 1.0, []))
-            factor, powered = None, True
+            self._levels.append(_Open(place, self._use_factor(), []))
+            self._may_be_powered = False
         elif word == ")":
-            _check_close(levels, factor, place)
-            closed = levels.pop()
-            levels[-1].items.append(Item(tuple(closed.items), closed.factor))
-            powered = False
+            self._refuse_after_factor(place, repr(word))
+            self._close(place)
         else:
-            items.append(Item(word, factor or 1.0))
-            factor, powered = None, False
-    if factor is not None:
-        raise SequenceError(factor_place, f"{_BEHIND_FACTOR}, got the end")
-    if len(levels) > 1:
-        raise SequenceError(levels[-1].place, "expected a closing parenthesis for this one, got none")
-    return tuple(levels[0].items)
+            self._levels[-1].items.append(Item(word, self._use_factor()))
+            self._may_be_powered = True
+
+    def end(self) -> Items:
+        """Return the tree once all words are taken."""
+        if self._factor:
+            self._refuse_after_factor(self._factor[0], "the end")
+        if len(self._levels) > 1:
+            raise SequenceError(self._levels[-1].place, "expected a closing parenthesis for this one, got none")
+        return tuple(self._levels[0].items)
+
+    def _use_factor(self) -> float:
+        value = self._factor[1] if self._factor else 1.0
+        self._factor = None
+        return value
+
+    def _refuse_after_factor(self, place: int, found: str) -> None:
+        if self._factor:
+            raise SequenceError(place, f"expected a letter or a parenthesis behind the factor, got {found}")
+
+    def _take_power(self, place: int, word: str) -> None:
+        if not self._may_be_powered or self._factor:
+            raise SequenceError(place, "expected a letter or a parenthesis before the power")
+        items = self._levels[-1].items
+        items[-1] = Item(items[-1].body, items[-1].factor, _power(word, place))
+        self._may_be_powered = False
+
+    def _close(self, place: int) -> None:
+        if len(self._levels) == 1:
+            raise SequenceError(place, "expected an opening parenthesis before this one, got none")
+        closed = self._levels.pop()
+        if not closed.items:
+            raise SequenceError(closed.place, "expected letters in the parentheses, got none")
+        self._levels[-1].items.append(Item(tuple(closed.items), closed.factor))
+        self._may_be_powered = True
 
 
 def _words(text: str) -> Iterator[tuple[int, str, str]]:
@@ -151,15 +180,6 @@ def _power(word: str, place: int) -> int:
     if value < 1:
         raise SequenceError(place, f"expected a power >= 1, got {digits}")
     return value
-
-
-def _check_close(levels: list[_Open], factor: float | None, place: int) -> None:
-    if factor is not None:
-        raise SequenceError(place, f"{_BEHIND_FACTOR}, got ')'")
-    if len(levels) == 1:
-        raise SequenceError(place, "expected an opening parenthesis before this one, got none")
-    if not levels[-1].items:
-        raise SequenceError(levels[-1].place, "expected letters in the parentheses, got none")
 
 
 def letters_of(items: Items) -> dict[str, None]:

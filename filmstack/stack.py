@@ -98,7 +98,7 @@ class Stack:
     layers: tuple[Layer | Plate, ...]
     exit: Material
 
-    def __init__(self, incident: Material, layers: Sequence[Layer | Plate], exit: Material) -> None:  # noqa: A002
+    def __init__(self, incident: Material, layers: Sequence[Layer | Plate], exit: Material) -> None:
         _checked_material("Stack.incident", incident)
         _checked_material("Stack.exit", exit)
         if isinstance(layers, Layer | Plate):

@@ -58,6 +58,8 @@ _WHERE = {
     "thickness_gradient": "analysis.gradients",
     "index_gradient": "analysis.gradients",
     "needle_gradient": "analysis.gradients",
+    "field": "analysis.field",
+    "Field": "analysis.field",
     "phase": "analysis.phase",
     "Phase": "analysis.phase",
 }

@@ -171,6 +171,7 @@ def test_short_answers_load_no_command(word, tmp_path):
         ("spectrum DESIGN --output all.csv", {"numpy"}),
         ("spectrum DESIGN --plot all.png", {"numpy", "matplotlib"}),
         ("phase DESIGN", {"numpy", "scipy"}),  # how far the rounding of a table moves the GDD
+        ("field DESIGN", {"numpy"}),
         ("show DESIGN", {"numpy"}),
         ("materials", {"numpy"}),
         ("materials SiO2 --at 550", {"numpy"}),

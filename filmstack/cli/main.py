@@ -22,6 +22,7 @@ DONE, NOT_MET, WRONG_INPUT, INTERRUPTED = 0, 1, 2, 130
 COMMANDS = {
     "spectrum": "reflectance, transmittance and absorptance of designs over wavelength and angle",
     "phase": "phase, group delay, GDD and TOD of a design",
+    "field": "electric field inside a design, its largest values, and where light is absorbed",
     "show": "the layers of a design as a table, and its index profile as a plot",
     "materials": "list the materials, print n and k, judge a table of your own",
 }

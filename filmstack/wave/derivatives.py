@@ -209,7 +209,9 @@ class Passes:
         return np.asarray(square), np.asarray(product) * (1.0 - 2.0 * np.mod(turns, 2.0))
 
 
-def _faded_cosine_sine(kappa: ComplexArray, k0: FloatArray, d: float) -> tuple[ComplexArray, ComplexArray, FloatArray]:
+def faded_cosine_sine(
+    kappa: ComplexArray, k0: FloatArray, d: float | FloatArray
+) -> tuple[ComplexArray, ComplexArray, FloatArray]:
     """Return cos(delta) and sin(delta), both over exp|Im delta|, and exp(-2 |Im delta|)."""
     turn = (2.0 / np.pi) * kappa.real * k0 * d
     s, c, turns = kernels.sine_cosine(turn)
@@ -225,7 +227,7 @@ def layer_integrals(kappa: ComplexArray, k0: FloatArray, d: float) -> tuple[Comp
     With C = cos(kappa k0 z) and S = sin(kappa k0 z) / kappa: of C^2, S^2 and C S, over exp(2 |Im delta|),
     and of C(z) C(d - z), S(z) S(d - z) and C(z) S(d - z), over exp|Im delta|.
     """
-    cosine, sine, fade = _faded_cosine_sine(kappa, k0, d)
+    cosine, sine, fade = faded_cosine_sine(kappa, k0, d)
     delta = kappa * k0 * d
     square = kappa * kappa
     small = np.abs(delta) < 0.4

@@ -340,7 +340,8 @@ def _mover(written: Written, folder: Path) -> Callable[[Any], Any]:
     stays = written.folder.resolve() == folder.resolve()
 
     def move(value: Any) -> Any:  # noqa: ANN401 - a text or table
-        if stays or not isinstance(value, str) or value in own:
+        # A name of the file's own stays, unless it stands for itself: then it names a file beside the design.
+        if stays or not isinstance(value, str) or own.get(value, value) != value:
             return value
         from filmstack.materials.library import own_file
 

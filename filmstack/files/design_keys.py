@@ -167,6 +167,10 @@ class _Version:
             return value
         newer = isinstance(value, int | float) and value > VERSION
         advice = "Read this file with a newer filmstack" if newer else ""
+        if isinstance(value, float) and value == VERSION:
+            return faults.add(
+                where, f"expected the whole number {VERSION}, got {value!r}", "Leave the decimal point out"
+            )
         return faults.add(where, f"expected version {VERSION} of the file format, got {told(value)}", advice)
 
 

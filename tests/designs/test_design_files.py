@@ -382,6 +382,21 @@ def test_names_of_files_hold_in_another_folder(design, tmp_path):
     assert [film.material.index(600.0).real for film in films] == pytest.approx([1.75, 1.25], abs=1e-9)
 
 
+def test_an_own_name_that_stands_for_itself_holds_in_another_folder(design, tmp_path):
+    write_table(tmp_path / "materials", "mine.csv", 1.75)
+    read = design(HEAD + "[materials]\nmine = 'mine'\n[[layer]]\nmaterial = 'mine'\nthickness_nm = 1\n")
+    (tmp_path / "results").mkdir()
+    fs.save_design(read, tmp_path / "results" / "b.toml")
+    film = fs.load_design(tmp_path / "results" / "b.toml").stack.films[0]
+    assert film.material.index(600.0).real == pytest.approx(1.75, abs=1e-9)
+
+
+def test_a_decimal_point_in_the_version_is_told(design):
+    with pytest.raises(fs.DesignFileError) as told:
+        design(HEAD.replace("filmstack = 1", "filmstack = 1.0"))
+    assert "filmstack: expected the whole number 1, got 1.0. Leave the decimal point out" in str(told.value)
+
+
 def test_a_design_made_in_python_is_written_and_read(tmp_path):
     layers = [fs.Layer(fs.constant(2.0, 1e-3), 12.5, locked=True), fs.Plate(fs.constant(1.5), 2.0)]
     stack = fs.Stack(fs.constant(1.0), [*layers, fs.Layer(fs.material("SiO2"), 50.0)], fs.constant(1.0))

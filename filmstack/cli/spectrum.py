@@ -138,7 +138,10 @@ def _part(design: Design, path: str, name: str, options: Options) -> Part:
     wavelength, remarks = default_wavelengths(design, stack, options)
     angle = options.angle or {"angle": _steps(0, 90), "map": _steps(0, 80)}.get(options.view)
     lit = stack if options.side == "front" else stack.reversed()
-    result = spectrum(lit, wavelength, angle or design.incident_angle_deg)
+    try:
+        result = spectrum(lit, wavelength, angle or design.incident_angle_deg)
+    except FilmstackError as error:  # which of the designs it was
+        raise type(error)(f"{path}: {error.where}", error.problem, error.advice) from error
     return Part(name, path, lit, result, remarks)
 
 

@@ -204,7 +204,7 @@ def test_nothing_is_written_when_something_is_wrong(folder, capsys):
     before = sorted(folder.rglob("*"))
     assert spectrum("surface.toml --wavelength 200:400:50 --output a.csv --plot a.png") == 2
     error = capsys.readouterr().err
-    assert error.startswith("filmstack: ")
+    assert error.startswith("filmstack: surface.toml: ")
     assert "expected a wavelength from 300 to 1300 nm, got 200 nm" in error
     assert spectrum("surface.toml --view map --angle 0 --output a.csv --plot a.png") == 2
     assert sorted(folder.rglob("*")) == before

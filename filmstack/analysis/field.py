@@ -17,7 +17,7 @@ import numpy as np
 from filmstack.analysis.points import Request, request
 from filmstack.constants import FREE_SPACE_IMPEDANCE_OHM
 from filmstack.errors import ArgumentError, CoherenceError
-from filmstack.wave import kernels
+from filmstack.wave import arithmetic, kernels
 from filmstack.wave.derivatives import faded_cosine_sine
 from filmstack.wave.finish import Front, as_complex, fields, halvings
 from filmstack.wave.media import normal_wavenumber
@@ -284,7 +284,7 @@ class _Solved:
     def _scale(self, level: int | slice, regained: FloatArray | float) -> FloatArray:
         """Return what makes stored fields true, after `regained` of the decay was gone back."""
         decay = np.maximum(self.decay[level] - regained, 0.0)
-        return np.asarray(kernels.halved(np.ones_like(decay), 0.5 * decay, 200.0 * self.count[level] + 0.0 * decay))
+        return np.asarray(arithmetic.halved(np.ones_like(decay), 0.5 * decay, 200.0 * self.count[level] + 0.0 * decay))
 
     def _before(self, depth: FloatArray) -> tuple[ComplexArray, ComplexArray]:
         """Carry the fields into the lossless incident medium (depth < 0)."""

@@ -1,4 +1,4 @@
-"""The compiled copy of `filmstack.wave.kernels`; importing this module loads the compiler.
+"""The compiled copy of `filmstack.wave.arithmetic` and `kernels`; importing this module loads the compiler.
 
 The functions are compiled with a tile of `TILE` points, serial, without fast-math, and release the
 interpreter lock. The cache's folder carries a hash of this room and of the package versions, so a
@@ -18,7 +18,7 @@ from typing import Any
 import numba
 import numpy as np
 
-from filmstack.wave import kernels
+from filmstack.wave import arithmetic, kernels
 
 TILE = 256
 
@@ -40,13 +40,13 @@ def _cache_folder() -> Path:
 
 
 def _compile() -> dict[str, Callable[..., Any]]:
-    namespace: dict[str, Any] = {**vars(kernels), "TILE": TILE}
+    namespace: dict[str, Any] = {**vars(arithmetic), **vars(kernels), "TILE": TILE}
     config: Any = numba.config
     before = config.CACHE_DIR
     config.CACHE_DIR = str(_cache_folder())
     try:
-        for name in kernels.COMPILED:
-            plain = vars(kernels)[name]
+        for name in (*arithmetic.COMPILED, *kernels.COMPILED):
+            plain = namespace[name]
             copy = FunctionType(plain.__code__, namespace, name, plain.__defaults__)
             copy.__module__, copy.__qualname__ = __name__, name
             namespace[name] = numba.njit(

@@ -16,7 +16,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from filmstack.wave import kernels
+from filmstack.wave import arithmetic, kernels
 from filmstack.wave.finish import Front, as_complex, fields, halvings
 from filmstack.wave.media import Ends, Media, Pair, over, times
 from filmstack.wave.route import BLOCK_CELLS, WORTH_SHARING, Group, compiler_pays, dark, states
@@ -203,9 +203,9 @@ class Passes:
         decay = np.maximum((first[:, kernels.DECAY] - self.trace[decay_level, :, kernels.DECAY])[0], 0.0)
         one = np.ones_like(decay)
         count = (halvings(first, p) - halvings(ahead, p))[0]
-        square = kernels.halved(one, decay, 400.0 * count)
+        square = arithmetic.halved(one, decay, 400.0 * count)
         turns = (first - ahead - behind)[0, kernels.TURNS]
-        product = kernels.halved(one, 0.0 * decay, 200.0 * (count - halvings(behind, p)[0]))
+        product = arithmetic.halved(one, 0.0 * decay, 200.0 * (count - halvings(behind, p)[0]))
         return np.asarray(square), np.asarray(product) * (1.0 - 2.0 * np.mod(turns, 2.0))
 
 
@@ -214,9 +214,9 @@ def faded_cosine_sine(
 ) -> tuple[ComplexArray, ComplexArray, FloatArray]:
     """Return cos(delta) and sin(delta), both over exp|Im delta|, and exp(-2 |Im delta|)."""
     turn = (2.0 / np.pi) * kappa.real * k0 * d
-    s, c, turns = kernels.sine_cosine(turn)
+    s, c, turns = arithmetic.sine_cosine(turn)
     sign = 1.0 - 2.0 * np.mod(turns, 2.0)
-    e = kernels.exponential_minus_1(2.0 * kappa.imag * k0 * d)
+    e = arithmetic.exponential_minus_1(2.0 * kappa.imag * k0 * d)
     ch, sh = 1.0 + 0.5 * e, -0.5 * e
     return sign * (c * ch + 1j * (s * sh)), sign * (s * ch - 1j * (c * sh)), 1.0 + e
 

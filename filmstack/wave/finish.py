@@ -12,7 +12,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from filmstack.wave import kernels
+from filmstack.wave import arithmetic, kernels
 from filmstack.wave.media import Ends, Pair, over, times
 
 if TYPE_CHECKING:
@@ -93,7 +93,7 @@ class Front:
         sign = 1.0 - 2.0 * np.mod(self.state[:, kernels.TURNS], 2.0)
         re, im = (np.where(self.grazing | self._closed, 0.0, sign * part) for part in (re, im))
         decay, count = 0.5 * self.state[:, kernels.DECAY], 200.0 * halvings(self.state, self.p)
-        return np.asarray(kernels.halved(re, decay, count)), np.asarray(kernels.halved(im, decay, count))
+        return np.asarray(arithmetic.halved(re, decay, count)), np.asarray(arithmetic.halved(im, decay, count))
 
     @cached_property
     def log10_size(self) -> FloatArray:
@@ -116,4 +116,4 @@ class Front:
         numerator = np.where(self._closed | self.grazing, 0.0, numerator)
         size = np.where(self.grazing, 1.0, self.size)
         count = 400.0 * halvings(self.state, self.p)
-        return np.asarray(kernels.halved(numerator / size, self.state[:, kernels.DECAY], count))
+        return np.asarray(arithmetic.halved(numerator / size, self.state[:, kernels.DECAY], count))

@@ -1,4 +1,4 @@
-"""The arithmetic of the engine, written once for compiled and for array work.
+"""The kernels of the engine, written once for compiled and for array work.
 
 Every function here is plain Python over numbers that may be scalars or whole arrays, with
 + - * / and comparisons on reals only. `filmstack.wave.compiled` compiles a copy in which a point
@@ -19,7 +19,7 @@ from __future__ import annotations
 
 from typing import Any
 
-import numpy as np
+from filmstack.wave.arithmetic import exponential_minus_1, halved, rescaled, sine_cosine
 
 TILE = 1
 """Points in a row of scratch; the compiled copy has its own constant."""
@@ -36,17 +36,8 @@ DAMPING, INVERSE_IM, ZERO, V_S_IM, U_P_IM, V_P_IM, LOSSY_ROWS = 5, 6, 7, 8, 9, 1
 EXIT_S, EXIT_P, INCIDENT_S, INCIDENT_P, FLUX_S, FLUX_P, CLOSED, END_ROWS = 0, 4, 8, 10, 12, 13, 14, 15
 
 RESCALE_EVERY = 16
-LARGE, SMALL = 2.0**200, 2.0**-200
-POWERS_OF_HALF = 0.5 ** np.arange(1200)
-MOST_HALVINGS = 1150.0
-
-LN2_HIGH, LN2_LOW, LOG2_E = 6.93147180369123816490e-01, 1.90821492927058770002e-10, 1.4426950408889634
 
 COMPILED = (
-    "sine_cosine",
-    "exponential_minus_1",
-    "halved",
-    "rescaled",
     "lossless_step",
     "lossy_step",
     "phase_lossy",
@@ -65,161 +56,6 @@ COMPILED = (
     "run_gradient",
 )
 """Functions of the compiled copy, each after those it calls."""
-
-
-def sine_cosine(x: Any) -> tuple[Any, Any, Any]:
-    """Return s, c, t with sin = (-1)^t s and cos = (-1)^t c of x quarter waves.
-
-    The reduction x - rint(x) is exact; the polynomials (least largest error on half a quarter
-    wave) are right to 1e-16. The common sign is counted, not applied: it drops out of R and T.
-    """
-    q = np.rint(x)
-    f = x - q
-    z = f * f
-    sine = f * (
-        1.5707963267948966
-        + z
-        * (
-            -0.6459640975062443
-            + z
-            * (
-                0.07969262624604301
-                + z
-                * (
-                    -0.004681754132340976
-                    + z * (0.0001604411507421909 + z * (-3.59864335298231e-06 + z * 5.633933781537854e-08))
-                )
-            )
-        )
-    )
-    cosine = 1.0 + z * (
-        -1.2337005501361697
-        + z
-        * (
-            0.2536695079010478
-            + z
-            * (
-                -0.020863480763340773
-                + z
-                * (
-                    0.0009192602745468447
-                    + z * (-2.5202039028029178e-05 + z * (4.710678405505227e-07 + z * -6.329396344967424e-09))
-                )
-            )
-        )
-    )
-    turns = np.floor(0.5 * q)
-    odd = q - 2.0 * turns
-    even = 1.0 - odd
-    return even * sine + odd * cosine, even * cosine - odd * sine, turns
-
-
-def exponential_minus_1(y: Any) -> Any:
-    """Return exp(y) - 1 for y <= 0, right to the last digits also next to 0."""
-    deep = (y < -75.0) * 1.0
-    y = (1.0 - deep) * y - 75.0 * deep
-    k = np.rint(y * LOG2_E)
-    r = (y - k * LN2_HIGH) - k * LN2_LOW
-    p = r * (
-        1.0
-        + r
-        * (
-            1.0 / 2.0
-            + r
-            * (
-                1.0 / 6.0
-                + r
-                * (
-                    1.0 / 24.0
-                    + r
-                    * (
-                        1.0 / 120.0
-                        + r
-                        * (
-                            1.0 / 720.0
-                            + r
-                            * (
-                                1.0 / 5040.0
-                                + r
-                                * (
-                                    1.0 / 40320.0
-                                    + r
-                                    * (
-                                        1.0 / 362880.0
-                                        + r
-                                        * (
-                                            1.0 / 3628800.0
-                                            + r
-                                            * (1.0 / 39916800.0 + r * (1.0 / 479001600.0 + r * (1.0 / 6227020800.0)))
-                                        )
-                                    )
-                                )
-                            )
-                        )
-                    )
-                )
-            )
-        )
-    )
-    power = np.int64((np.int64(k) + 1023) << 52).view(np.float64)
-    return power * p + (power - 1.0)
-
-
-def halved(x: Any, y: Any, halvings: Any) -> Any:
-    """Return x exp(-y) 2^-halvings for y >= 0, without a false underflow on the way."""
-    k = np.rint(y * LOG2_E)
-    r = k * LN2_HIGH - y + k * LN2_LOW
-    p = 1.0 + r * (
-        1.0
-        + r
-        * (
-            1.0 / 2.0
-            + r
-            * (
-                1.0 / 6.0
-                + r
-                * (
-                    1.0 / 24.0
-                    + r
-                    * (
-                        1.0 / 120.0
-                        + r
-                        * (
-                            1.0 / 720.0
-                            + r
-                            * (
-                                1.0 / 5040.0
-                                + r
-                                * (
-                                    1.0 / 40320.0
-                                    + r
-                                    * (
-                                        1.0 / 362880.0
-                                        + r * (1.0 / 3628800.0 + r * (1.0 / 39916800.0 + r * (1.0 / 479001600.0)))
-                                    )
-                                )
-                            )
-                        )
-                    )
-                )
-            )
-        )
-    )
-    total = k + halvings
-    up = (total < 0.0) * 1.0
-    total = total * (1.0 - 2.0 * up)
-    over = (total > 2.0 * MOST_HALVINGS) * 1.0
-    total = total * (1.0 - over) + 2.0 * MOST_HALVINGS * over
-    first = np.floor(0.5 * total)
-    a, b = POWERS_OF_HALF[np.int64(first)], POWERS_OF_HALF[np.int64(total - first)]
-    down = ((p * x) * a) * b
-    return down * (1.0 - up) + (p * x) / (a * up + (1.0 - up)) / (b * up + (1.0 - up)) * up
-
-
-def rescaled(size: Any) -> tuple[Any, Any]:
-    """Return the power of two that brings `size` back to the middle, and its exponent over 200."""
-    big, little = (size > LARGE) * 1.0, (size < SMALL) * 1.0
-    return (1.0 - big - little) + big * SMALL + little * LARGE, big - little
 
 
 def lossless_step(c: Any, us: Any, vs: Any, er: Any, hi: Any, hr: Any, ei: Any) -> tuple[Any, Any, Any, Any]:

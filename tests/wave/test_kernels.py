@@ -5,7 +5,7 @@ import numpy as np
 import pytest
 
 import filmstack as fs
-from filmstack.wave import kernels
+from filmstack.wave import arithmetic
 from filmstack.wave.derivatives import layer_integrals
 from filmstack.wave.route import forced
 
@@ -14,7 +14,7 @@ def test_sine_and_cosine_are_right_to_1e_16_with_their_signs():
     # mpmath at 40 digits.
     x = np.random.default_rng(0).random(2000) * 60.0
     x[:12] = np.arange(12)
-    s, c, turns = kernels.sine_cosine(x)
+    s, c, turns = arithmetic.sine_cosine(x)
     sign = 1.0 - 2.0 * np.mod(turns, 2.0)
     with mp.workdps(40):
         for value, cosine, quarter_waves in zip(sign * s, sign * c, x, strict=True):
@@ -25,7 +25,7 @@ def test_sine_and_cosine_are_right_to_1e_16_with_their_signs():
 
 def test_whole_quarter_waves_are_exact():
     # sin and cos of multiples of 90 degrees: 0 and +-1.
-    s, c, turns = kernels.sine_cosine(np.arange(8.0))
+    s, c, turns = arithmetic.sine_cosine(np.arange(8.0))
     sign = 1.0 - 2.0 * np.mod(turns, 2.0)
     np.testing.assert_array_equal(sign * s, [0, 1, 0, -1, 0, 1, 0, -1])
     np.testing.assert_array_equal(sign * c, [1, 0, -1, 0, 1, 0, -1, 0])
@@ -35,7 +35,7 @@ def test_exponential_minus_1_keeps_its_digits_next_to_zero():
     # mpmath at 40 digits.
     y = -np.concatenate([np.logspace(-18, 1.8, 400), [0.0, 0.3466, 0.35, 1.04, 74.0]])
     with mp.workdps(40):
-        for value, argument in zip(kernels.exponential_minus_1(y), y, strict=True):
+        for value, argument in zip(arithmetic.exponential_minus_1(y), y, strict=True):
             true = mp.expm1(mp.mpf(float(argument)))
             assert abs(mp.mpf(float(value)) - true) <= 3e-16 * abs(true)
 
@@ -45,7 +45,7 @@ def test_halved_has_no_false_underflow(y, halvings):
     # mpmath at 40 digits.
     with mp.workdps(40):
         true = mp.mpf(1.3) * mp.exp(-mp.mpf(y)) * mp.mpf(2) ** -mp.mpf(halvings)
-        value = mp.mpf(float(kernels.halved(np.float64(1.3), np.float64(y), np.float64(halvings))))
+        value = mp.mpf(float(arithmetic.halved(np.float64(1.3), np.float64(y), np.float64(halvings))))
         assert abs(value - true) <= 4e-16 * true
 
 

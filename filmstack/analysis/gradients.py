@@ -13,15 +13,12 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
-from filmstack.analysis.points import Request, checked_axis, request
-from filmstack.analysis.solution import Incoherent
-from filmstack.errors import ArgumentError, CoherenceError
+from filmstack.analysis.gradient_rows import Amplitudes, ByIndex, ByNeedle, ByThickness, Rows, Turned
+from filmstack.analysis.points import checked_axis, request
+from filmstack.errors import ArgumentError
 from filmstack.materials.material import Material
 from filmstack.stack import Layer, Stack
-from filmstack.wave.derivatives import Passes
-from filmstack.wave.finish import as_complex
 from filmstack.wave.media import Media
-from filmstack.wave.route import Group, blocking_films
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -32,160 +29,6 @@ if TYPE_CHECKING:
 
 NEEDLE_DEPTHS = 16
 """Depths a layer at which a needle is tried by default, both faces included."""
-
-
-class _Amplitudes:
-    """dr and d ln(1/t) of the rows of a gradient, for one coherent group."""
-
-    def __init__(self, group: Group) -> None:
-        if bool(np.any(blocking_films(group))):
-            raise ArgumentError(
-                "stack: a film of N = 0 blocks p at oblique incidence; derivatives are not defined there. "
-                "Leave out these wavelengths, or use normal incidence"
-            )
-        self.group = group
-        self.passes = Passes(group)
-        self._known: dict[bool, tuple[ComplexArray, ComplexArray]] = {}
-
-    def rows(self, p: bool) -> tuple[ComplexArray, ComplexArray]:
-        """Return dr and d ln(1/t), shape (row, point), computed once."""
-        if p not in self._known:
-            self._known[p] = self._rows(p)
-        return self._known[p]
-
-    def _rows(self, p: bool) -> tuple[ComplexArray, ComplexArray]:
-        raise NotImplementedError
-
-    def r(self, p: bool) -> ComplexArray:
-        """Return r, shape (point,)."""
-        return as_complex(self.passes.front(p).r)[0]
-
-    def t(self, p: bool) -> ComplexArray:
-        """Return t, shape (point,)."""
-        return as_complex(self.passes.front(p).t)[0]
-
-    def grazing(self, p: bool) -> Any:  # noqa: ANN401 - array of bool
-        """Return where nothing changes because the light grazes the stack."""
-        return self.passes.front(p).grazing[0]
-
-
-class _ByThickness(_Amplitudes):
-    def _rows(self, p: bool) -> tuple[ComplexArray, ComplexArray]:
-        dr = self._table[4 * p : 4 * p + 4]
-        return dr[0] + 1j * dr[1], dr[2] + 1j * dr[3]
-
-    @cached_property
-    def _table(self) -> FloatArray:
-        return self.passes.thickness(powers=False)
-
-    @cached_property
-    def powers(self) -> FloatArray:
-        """dR_s, dT_s, dR_p, dT_p, shape (4, row, point)."""
-        return self.passes.thickness(powers=True)
-
-
-class _ByIndex(_Amplitudes):
-    def _rows(self, p: bool) -> tuple[ComplexArray, ComplexArray]:
-        pairs = [self.passes.index(layer, p) for layer in range(len(self.group.order))]
-        return _stacked(pairs, self.group.shape[1])
-
-
-class _ByNeedle(_Amplitudes):
-    """A needle at the given levels of a group whose layers were cut at the depths."""
-
-    def __init__(self, group: Group, levels: IntArray, needle: Media) -> None:
-        super().__init__(group)
-        self.levels, self.needle = levels, needle
-
-    def _rows(self, p: bool) -> tuple[ComplexArray, ComplexArray]:
-        v = as_complex(self.needle.v_p if p else self.needle.v_s)[0, 0]
-        u = as_complex(self.needle.u_p)[0, 0] if p else np.ones_like(v)
-        return _stacked([self.passes.forms(int(level), p, u, v) for level in self.levels], self.group.shape[1])
-
-
-def _stacked(pairs: list[tuple[ComplexArray, ComplexArray]], points: int) -> tuple[ComplexArray, ComplexArray]:
-    if not pairs:
-        return np.empty((0, points), complex), np.empty((0, points), complex)
-    dr, dl = zip(*pairs, strict=True)
-    return np.stack(dr), np.stack(dl)
-
-
-@dataclass(frozen=True)
-class _Rows:
-    """Derivatives of a whole request, row by row: coherent, or through plates.
-
-    Parameters
-    ----------
-    asked : Request
-        The request.
-    fronts, backs : list of _Amplitudes
-        Of each group, lit from the front and (with plates) from behind; rows of `backs` in the order of `fronts`.
-    """
-
-    asked: Request
-    fronts: list[_Amplitudes]
-    backs: list[_Amplitudes]
-
-    def shaped(self, values: Any) -> Any:  # noqa: ANN401 - real or complex array
-        return values.reshape(*values.shape[:-1], *self.asked.shape)
-
-    def amplitude(self, p: bool, transmitted: bool) -> ComplexArray:
-        """Return dr or dt, shape (row, angle, wavelength)."""
-        if self.backs:
-            raise CoherenceError("a stack with a thick plate has no amplitude derivatives. Ask for dR and dT")
-        front = self.fronts[0]
-        dr, dl = front.rows(p)
-        with np.errstate(invalid="ignore"):
-            values = -front.t(p) * dl if transmitted else dr
-        return np.asarray(self.shaped(np.where(front.grazing(p), 0.0, values)))
-
-    def power(self, p: bool, transmitted: bool, factor: complex = 1.0) -> FloatArray:
-        """Return dR or dT, shape (row, angle, wavelength); `factor` is dN per unit of the variable."""
-        if self.backs:
-            return np.asarray(self.shaped(self._through_plates(p, transmitted, factor)))
-        front = self.fronts[0]
-        if isinstance(front, _ByThickness):
-            return np.asarray(self.shaped(front.powers[2 * p + transmitted]))
-        dr, dl = front.rows(p)
-        with np.errstate(invalid="ignore"):
-            if transmitted:
-                flux = front.passes.front(p).part(front.group.ends.flux(p))[0]
-                values = -2.0 * flux * (factor * dl).real
-            else:
-                values = 2.0 * (np.conj(front.r(p)) * factor * dr).real
-        return np.asarray(self.shaped(np.where(front.grazing(p), 0.0, values)))
-
-    def _through_plates(self, p: bool, transmitted: bool, factor: complex) -> FloatArray:
-        """Carry the derivatives of |r|^2 and |t|^2 of each group through the ray sum."""
-        chain = Incoherent(self.asked).chain(p)
-        _, loads, gaps = chain.solved
-        total = chain.transmittance[0]
-        rows: list[FloatArray] = []
-        carry = np.ones_like(total)  # d(B/F in front) / d(B/F in front of this group)
-        upstream = np.zeros_like(total)  # d ln T / d(B/F in front of this group)
-        for place, (front, back) in enumerate(zip(self.fronts, self.backs, strict=True)):
-            crossing = chain.groups[place]
-            load, gap = loads[place][0], gaps[place][0]
-            both = (crossing.transmitted * crossing.back_transmitted)[0]
-            dr, dl = front.rows(p)
-            back_dr, _ = back.rows(p)
-            with np.errstate(invalid="ignore", divide="ignore"):
-                reflected = 2.0 * (np.conj(front.r(p)) * factor * dr).real
-                back_reflected = 2.0 * (np.conj(back.r(p)) * factor * back_dr).real
-                log_transmitted = -2.0 * (factor * dl).real
-                ratio = (
-                    reflected + 2.0 * log_transmitted * both * load / gap + back_reflected * both * (load / gap) ** 2
-                )
-                if transmitted:
-                    rows.append(total * (log_transmitted + load / gap * back_reflected + upstream * ratio))
-                else:
-                    rows.append(carry * ratio)
-                if place < len(chain.decays):
-                    fade = np.exp(-2.0 * chain.decays[place][0])
-                    step = both / gap**2 * fade
-                    upstream = upstream * step + crossing.back_reflectance[0] / gap * fade
-                    carry = carry * step
-        return np.where(chain.grazing[0], 0.0, np.concatenate(rows))
 
 
 def _pair_frame(result: Any, names: tuple[str, ...], row_name: str) -> pd.DataFrame:  # noqa: ANN401
@@ -204,7 +47,7 @@ class _Gradient:
     wavelength_nm: FloatArray
     angle_deg: FloatArray
     notes: tuple[str, ...]
-    _rows: _Rows
+    _rows: Rows
 
 
 @dataclass(frozen=True, eq=False)
@@ -352,9 +195,9 @@ def thickness_gradient(stack: Stack, wavelength_nm: ArrayLike, angle_deg: ArrayL
     array([[[-0.00014564]]])
     """
     asked = request(stack, wavelength_nm, angle_deg)
-    fronts: list[_Amplitudes] = [_ByThickness(group) for group in asked.groups()]
-    backs = [_Turned(_ByThickness(group)) for group in asked.reversed_groups()] if stack.plates else []
-    return ThicknessGradient(asked.wavelength_nm, asked.angle_deg[0], asked.notes, _Rows(asked, fronts, list(backs)))
+    fronts: list[Amplitudes] = [ByThickness(group) for group in asked.groups()]
+    backs = [Turned(ByThickness(group)) for group in asked.reversed_groups()] if stack.plates else []
+    return ThicknessGradient(asked.wavelength_nm, asked.angle_deg[0], asked.notes, Rows(asked, fronts, list(backs)))
 
 
 def index_gradient(stack: Stack, wavelength_nm: ArrayLike, angle_deg: ArrayLike = 0.0) -> IndexGradient:
@@ -386,20 +229,9 @@ def index_gradient(stack: Stack, wavelength_nm: ArrayLike, angle_deg: ArrayLike 
     array([[[0.147233]]])
     """
     asked = request(stack, wavelength_nm, angle_deg)
-    fronts: list[_Amplitudes] = [_ByIndex(group) for group in asked.groups()]
-    backs = [_Turned(_ByIndex(group)) for group in asked.reversed_groups()] if stack.plates else []
-    return IndexGradient(asked.wavelength_nm, asked.angle_deg[0], asked.notes, _Rows(asked, fronts, list(backs)))
-
-
-class _Turned(_Amplitudes):
-    """The rows of a group lit from behind, in the order of the light from the front."""
-
-    def __init__(self, inner: _Amplitudes) -> None:
-        self.inner, self.group, self.passes = inner, inner.group, inner.passes
-
-    def rows(self, p: bool) -> tuple[ComplexArray, ComplexArray]:
-        dr, dl = self.inner.rows(p)
-        return dr[::-1], dl[::-1]
+    fronts: list[Amplitudes] = [ByIndex(group) for group in asked.groups()]
+    backs = [Turned(ByIndex(group)) for group in asked.reversed_groups()] if stack.plates else []
+    return IndexGradient(asked.wavelength_nm, asked.angle_deg[0], asked.notes, Rows(asked, fronts, list(backs)))
 
 
 def needle_gradient(
@@ -455,16 +287,16 @@ def needle_gradient(
     n = cut_asked.at_points(material)
     needle = Media((n[0][:, np.newaxis], n[1][:, np.newaxis]), asked.direction(), asked.wavelength)
     groups, turned = cut_asked.groups(), cut_asked.reversed_groups()
-    fronts: list[_Amplitudes] = []
-    backs: list[_Amplitudes] = []
+    fronts: list[Amplitudes] = []
+    backs: list[Amplitudes] = []
     for place, group in enumerate(groups):
         levels = np.array([level for where, level in needles if where == place], dtype=np.int64)
-        fronts.append(_ByNeedle(group, levels, needle))
+        fronts.append(ByNeedle(group, levels, needle))
         if stack.plates:
-            backs.append(_ByNeedle(turned[place], len(group.order) - levels, needle))
+            backs.append(ByNeedle(turned[place], len(group.order) - levels, needle))
     shown = depths if layer is not None else starts[layers] + depths
     return NeedleGradient(
-        asked.wavelength_nm, asked.angle_deg[0], asked.notes, _Rows(cut_asked, fronts, backs), shown, layers
+        asked.wavelength_nm, asked.angle_deg[0], asked.notes, Rows(cut_asked, fronts, backs), shown, layers
     )
 
 

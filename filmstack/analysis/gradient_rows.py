@@ -21,7 +21,7 @@ from filmstack.wave.media import Media
 from filmstack.wave.route import Group, blocking_films
 
 if TYPE_CHECKING:
-    from filmstack.arraytypes import ComplexArray, FloatArray, IntArray
+    from filmstack.arraytypes import BoolArray, ComplexArray, FloatArray, IntArray
 
 
 class Amplitudes:

@@ -6,31 +6,11 @@ from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
 from filmstack.materials.material import Material, Provenance
-from filmstack.materials.models.formula import Formula, checked_numbers, given_or, same_length, wavelength_um
-from filmstack.wave.series import Number
+from filmstack.materials.models.formula import given_or
+from filmstack.materials.models.power_series import PowerSeries, checked_terms
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike
-
-    from filmstack.arraytypes import FloatArray
-
-
-class Cauchy(Formula):
-    """n = A + sum D L^q, L the wavelength in um."""
-
-    def __init__(
-        self, a: float, d: FloatArray, q: FloatArray, provenance: Provenance, *, relative_to_air: bool
-    ) -> None:
-        super().__init__(provenance, relative_to_air=relative_to_air)
-        self.a, self.d, self.q = a, d, q
-
-    def published(self, energy_ev: Number) -> Number:
-        """Return n."""
-        length = wavelength_um(energy_ev)
-        n = self.a + 0.0 * length
-        for d, q in zip(self.d.tolist(), self.q.tolist(), strict=True):
-            n = n + d * length**q
-        return n
 
 
 def cauchy(
@@ -78,8 +58,6 @@ def cauchy(
     >>> cauchy(1.875, [0.00628, 0.00058], [-2, -4]).index(632.8).real.round(4).item()
     1.8943
     """
-    d, e = checked_numbers("D", D), checked_numbers("q", q)
-    same_length(D=d, q=e)
-    (a,) = checked_numbers("A", A).tolist()
+    a, terms = checked_terms(A, D, q)
     made = given_or(provenance, "Cauchy formula", label, range_nm)
-    return Cauchy(a, d, e, made, relative_to_air=relative_to_air)
+    return PowerSeries(a, terms, made, squared=False, to_air=relative_to_air)

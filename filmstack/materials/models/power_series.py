@@ -23,21 +23,29 @@ if TYPE_CHECKING:
 
 
 class PowerSeries(Formula):
-    """n^2 = A + sum D L^q, L the wavelength in um."""
+    """A + sum D L^q, L the wavelength in um, which is n^2, or n itself if not `squared`."""
 
     def __init__(
-        self, a: float, d: FloatArray, q: FloatArray, provenance: Provenance, *, relative_to_air: bool
+        self, a: float, terms: tuple[FloatArray, FloatArray], provenance: Provenance, *, squared: bool, to_air: bool
     ) -> None:
-        super().__init__(provenance, relative_to_air=relative_to_air)
-        self.a, self.d, self.q = a, d, q
+        super().__init__(provenance, relative_to_air=to_air)
+        self.a, self.terms, self.squared = a, terms, squared
 
     def published(self, energy_ev: Number) -> Number:
         """Return n."""
         length = wavelength_um(energy_ev)
-        n = self.a + 0.0 * length
-        for d, q in zip(self.d.tolist(), self.q.tolist(), strict=True):
-            n = n + d * length**q
-        return from_square(n)
+        total = self.a + 0.0 * length
+        for d, q in zip(*(x.tolist() for x in self.terms), strict=True):
+            total = total + d * length**q
+        return from_square(total) if self.squared else total
+
+
+def checked_terms(A: float, D: ArrayLike, q: ArrayLike) -> tuple[float, tuple[FloatArray, FloatArray]]:
+    """Return the checked coefficients of a power series."""
+    terms = checked_numbers("D", D), checked_numbers("q", q)
+    same_length(D=terms[0], q=terms[1])
+    (a,) = checked_numbers("A", A).tolist()
+    return a, terms
 
 
 def power_series(
@@ -85,8 +93,6 @@ def power_series(
     >>> power_series(2.25, [0.01], [-2]).index(1000.0).real.round(4).item()
     1.5033
     """
-    d, e = checked_numbers("D", D), checked_numbers("q", q)
-    same_length(D=d, q=e)
-    (a,) = checked_numbers("A", A).tolist()
-    made = given_or(provenance, "Power series of n^2", label, range_nm)
-    return PowerSeries(a, d, e, made, relative_to_air=relative_to_air)
+    a, terms = checked_terms(A, D, q)
+    made = given_or(provenance, "power series of n^2", label, range_nm)
+    return PowerSeries(a, terms, made, squared=True, to_air=relative_to_air)

@@ -25,13 +25,15 @@ def fit_tables() -> dict[str, AnyArray]:
     Returns
     -------
     dict
-        For each table, by the name of its file: hash of its text, and knots and coefficients of the
-        spline of n unless n follows the monotone cubic, which needs none.
+        For each table, by the name of its file: hash of its text, deviation of the derivatives, and knots
+        and coefficients of the spline of n unless n follows the monotone cubic, which needs none.
     """
     arrays: dict[str, AnyArray] = {}
     for path in sorted(shipped_folder("materials").glob("*.csv")):
         table = shipped_table(read_header(path)["key"], fitted=False)
         arrays[f"{path.stem}.hash"] = np.array(text_hash(path.read_text(encoding="utf-8")))
+        # logarithms in half precision: a deviation right to one per cent
+        arrays[f"{path.stem}.deviation"] = np.log10(table.deviation).astype(np.float16)
         if isinstance(table.n_curve, SplineCurve):
             arrays[f"{path.stem}.knots"] = table.n_curve.knots
             arrays[f"{path.stem}.coefficients"] = table.n_curve.coefficients

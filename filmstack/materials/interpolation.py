@@ -142,7 +142,7 @@ def _end_slope(h0: float, h1: float, rise0: float, rise1: float) -> float:
     return 3.0 * rise0 if rise0 * rise1 <= 0.0 and abs(slope) > abs(3.0 * rise0) else slope
 
 
-def fit_curve(x: FloatArray, y: FloatArray, tolerance: FloatArray) -> Curve:
+def fit_curve(x: FloatArray, y: FloatArray, tolerance: FloatArray, patience: int = 60) -> Curve:
     """Return the smoothest curve that passes every row within its tolerance.
 
     Parameters
@@ -151,6 +151,8 @@ def fit_curve(x: FloatArray, y: FloatArray, tolerance: FloatArray) -> Curve:
         Photon energy, increasing [eV], and n [1].
     tolerance : ndarray of float, shape (points,)
         Half a unit of the last printed digit of each row. [1]
+    patience : int
+        Most fits with other weights before less smoothing is tried; many rows take a tenth of a second each.
 
     Returns
     -------
@@ -161,13 +163,37 @@ def fit_curve(x: FloatArray, y: FloatArray, tolerance: FloatArray) -> Curve:
     shape = monotone_curve(x, y)
     for degree in (5, 3):
         if len(x) > degree + 1:
-            curve = _smoothest(x, y, tolerance, degree)
-            if curve is not None and _keeps_shape(curve, shape, tolerance):
+            curve = _shaped(x, y, tolerance, degree, shape, patience)
+            if curve is not None:
                 return curve
     return shape
 
 
-def _smoothest(x: FloatArray, y: FloatArray, tolerance: FloatArray, degree: int) -> SplineCurve | None:
+def _shaped(
+    x: FloatArray, y: FloatArray, tolerance: FloatArray, degree: int, shape: MonotoneCurve, patience: int
+) -> SplineCurve | None:
+    """Return a smooth spline that keeps the shape of the rows, led by points of the monotone cubic where it strays."""
+    places, allowed = _between(shape, tolerance)
+    guide = shape.derivative(places, 0)
+    used = np.zeros(len(places), dtype=bool)
+    for _ in range(4):
+        at = np.concatenate([x, places[used]])
+        order = np.argsort(at)
+        values, room = np.concatenate([y, guide[used]]), np.concatenate([tolerance, 0.8 * allowed[used]])
+        curve = _smoothest(at[order], values[order], room[order], degree, patience)
+        if curve is None:
+            return None
+        value = curve.derivative(places, 0)
+        stray = (np.abs(value - guide) > allowed) | (value < 0.0)
+        if not np.any(stray):
+            return curve
+        if np.mean(stray) > 0.25:  # noise above the printed digits
+            return None
+        used |= np.repeat(stray.reshape(-1, 3).any(axis=1), 3)
+    return None
+
+
+def _smoothest(x: FloatArray, y: FloatArray, tolerance: FloatArray, degree: int, patience: int) -> SplineCurve | None:
     """Return a spline of few knots within the tolerance of every row.
 
     Rounding errors even over +- the tolerance have a mean square of tolerance^2 / 3, which sets the
@@ -176,7 +202,7 @@ def _smoothest(x: FloatArray, y: FloatArray, tolerance: FloatArray, degree: int)
     """
     for share in (1.0 / 3.0, 0.1, 0.01):
         weight = 1.0 / tolerance
-        for turn in range(60):
+        for turn in range(patience):
             curve = _smoothed(x, y, weight, degree, share * len(x))
             if curve is None or (turn >= 20 and len(curve.knots) > 0.5 * len(x)):  # slow, and little gain
                 break
@@ -200,49 +226,53 @@ def _smoothed(x: FloatArray, y: FloatArray, weight: FloatArray, degree: int, s: 
     return SplineCurve(np.asarray(knots), np.asarray(c[: len(knots) - degree - 1]))
 
 
-def _keeps_shape(curve: Curve, shape: MonotoneCurve, tolerance: FloatArray) -> bool:
-    """Judge whether a spline strays from the rows between them: by a quarter of what they change nearby."""
+def _between(shape: MonotoneCurve, tolerance: FloatArray) -> tuple[FloatArray, FloatArray]:
+    """Return three places between each pair of rows, and how far a spline may be from the monotone cubic there."""
     x, y = shape.x, shape.y
-    between = (x[:-1, np.newaxis] + np.diff(x)[:, np.newaxis] * np.array([0.25, 0.5, 0.75])).ravel()
+    places = (x[:-1, np.newaxis] + np.diff(x)[:, np.newaxis] * np.array([0.25, 0.5, 0.75])).ravel()
     change = np.abs(np.diff(y))
-    nearby = np.maximum(change, np.maximum(np.append(change[1:], 0.0), np.append(0.0, change[:-1])))
-    allowed = np.repeat(0.25 * nearby + 2.0 * np.maximum(tolerance[1:], tolerance[:-1]), 3)
-    value = curve.derivative(between, 0)
-    return bool(np.all(np.abs(value - shape.derivative(between, 0)) <= allowed) and np.all(value >= 0.0))
+    beside = np.sqrt(np.append(change[1:], 0.0) * np.append(0.0, change[:-1]))  # a true extremum has both sides
+    allowed = 0.15 * np.maximum(change, beside) + 2.0 * np.maximum(tolerance[1:], tolerance[:-1])
+    return places, np.repeat(allowed, 3)
 
 
-def derivative_deviation(
-    curve: SplineCurve, x: FloatArray, tolerance: FloatArray, at: FloatArray, order: int
-) -> FloatArray:
-    """Return the standard deviation that the rounding of the rows gives to a derivative of the spline.
+def derivative_deviation(curve: Curve, x: FloatArray, tolerance: FloatArray) -> FloatArray:
+    """Return the standard deviation that the rounding of the rows gives to n and its derivatives, at the rows.
 
     Parameters
     ----------
-    curve : SplineCurve
+    curve : Curve
         Fitted curve.
-    x, tolerance : ndarray of float, shape (points,)
+    x, tolerance : ndarray of float, shape (rows,)
         Photon energies of the rows [eV] and half a unit of their last digit [1].
-    at : ndarray of float, shape (values,)
-        Photon energies wanted. [eV]
-    order : int
-        Order of the derivative.
 
     Returns
     -------
-    ndarray of float, shape (values,)
+    ndarray of float, shape (curve.derivative_order + 1, rows)
         Standard deviation. [1/eV^order]
 
     Notes
     -----
     A rounding error is even over +- the tolerance; its variance, tolerance^2 / 3, is carried through the
-    least-squares spline on the same knots. What the spline misses between rows is not included.
+    least-squares spline on the same knots. A coefficient that no row holds is taken as known to +-0.1.
+    What the curve misses between rows is not included.
     """
+    if not isinstance(curve, SplineCurve):
+        # the rounding itself, and the difference of two of them over their distance
+        step = np.diff(x)
+        slope = np.hypot(tolerance[1:], tolerance[:-1]) / np.sqrt(3.0) / step
+        return np.stack([tolerance / np.sqrt(3.0), np.maximum(np.append(slope, 0.0), np.append(0.0, slope))])
     from scipy.interpolate import BSpline
-    from scipy.sparse import diags_array
+    from scipy.sparse import diags_array, eye_array
     from scipy.sparse.linalg import splu
 
+    size = len(curve.coefficients)
     basis = BSpline.design_matrix(x, curve.knots, curve.degree)
-    information = basis.T @ diags_array(3.0 / tolerance**2) @ basis
-    rows = BSpline(curve.knots, np.eye(len(curve.coefficients)), curve.degree)(at, nu=order)
-    variance = np.einsum("ac,ca->a", rows, splu(information.tocsc()).solve(rows.T))
-    return np.asarray(np.sqrt(variance))
+    information = basis.T @ diags_array(3.0 / tolerance**2) @ basis + 100.0 * eye_array(size)
+    factors = splu(information.tocsc())
+    spline = BSpline(curve.knots, np.eye(size), curve.degree)
+    deviations = []
+    for order in range(curve.derivative_order + 1):
+        rows = spline(x, nu=order)
+        deviations.append(np.sqrt(np.einsum("ac,ca->a", rows, factors.solve(rows.T))))
+    return np.stack(deviations)

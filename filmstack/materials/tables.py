@@ -8,7 +8,7 @@ the spline of another. N = n - ik; the files print k as a positive number.
 from __future__ import annotations
 
 import hashlib
-from functools import cache
+from functools import cache, cached_property, partial
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -28,7 +28,7 @@ from filmstack.materials.material import Material, Provenance
 from filmstack.materials.shipped import shipped_folder
 
 if TYPE_CHECKING:
-    from collections.abc import Mapping
+    from collections.abc import Callable, Mapping
 
     from numpy.typing import ArrayLike
 
@@ -51,6 +51,8 @@ class Table(Material):
         Half a unit of the last printed digit of n. [1]
     n_curve : Curve, optional
         n over photon energy, if fitted before.
+    deviation : callable, optional
+        Returns what `derivative_deviation` found for that curve.
     allow_gain : bool
         k < 0 was permitted.
     """
@@ -64,12 +66,15 @@ class Table(Material):
         tolerance: FloatArray,
         *,
         n_curve: Curve | None = None,
+        deviation: Callable[[], FloatArray] | None = None,
         allow_gain: bool = False,
     ) -> None:
         super().__init__(provenance, allow_gain=allow_gain)
         self.wavelength_nm, self.n, self.k, self.tolerance = wavelength_nm, n, k, tolerance
         self.energy_ev = PLANCK_EV_NM / wavelength_nm[::-1]
-        self.n_curve = n_curve or fit_curve(self.energy_ev, n[::-1], tolerance[::-1])
+        patience = 60 if len(n) <= 500 else 3
+        self._deviation = deviation
+        self.n_curve = n_curve or fit_curve(self.energy_ev, n[::-1], tolerance[::-1], patience)
         self.k_curve: MonotoneCurve = monotone_curve(self.energy_ev, k[::-1])
 
     @property
@@ -90,7 +95,7 @@ class Table(Material):
         Returns
         -------
         ndarray of float, shape of `wavelength_nm`
-            Standard deviation. [1/eV^order]
+            Standard deviation, that of the rows or between them. [1/eV^order]
 
         Raises
         ------
@@ -100,16 +105,14 @@ class Table(Material):
         if not 0 <= order <= self.derivative_order:
             raise ArgumentError(f"order: {self.label}: expected 0 to {self.derivative_order}, got {order}")
         at = self._checked(self.wavelength_nm if wavelength_nm is None else wavelength_nm)
-        energy = np.clip(PLANCK_EV_NM / at.ravel(), self.energy_ev[0], self.energy_ev[-1])
-        tolerance = self.tolerance[::-1]
-        if isinstance(self.n_curve, SplineCurve):
-            return derivative_deviation(self.n_curve, self.energy_ev, tolerance, energy, order).reshape(at.shape)
-        # between two rows: the rounding itself, or the difference of two of them over their distance
-        i = np.clip(np.searchsorted(self.energy_ev, energy, side="right") - 1, 0, len(self.n) - 2)
-        pair = np.hypot(tolerance[i], tolerance[i + 1]) / np.sqrt(3.0)
-        if order == 0:
-            return np.asarray(pair / np.sqrt(2.0)).reshape(at.shape)
-        return np.asarray(pair / np.diff(self.energy_ev)[i]).reshape(at.shape)
+        return np.asarray(np.exp(np.interp(PLANCK_EV_NM / at, self.energy_ev, np.log(self.deviation[order]))))
+
+    @cached_property
+    def deviation(self) -> FloatArray:
+        """Standard deviations of n and its derivatives, shape (order, row), by rising photon energy. [1/eV^order]"""
+        if self._deviation is not None:
+            return self._deviation()
+        return derivative_deviation(self.n_curve, self.energy_ev, self.tolerance[::-1])
 
     def _index(self, wavelength_nm: FloatArray, temperature_c: float | None) -> ComplexArray:
         return self._index_derivatives(wavelength_nm, 0, temperature_c)[0]
@@ -140,9 +143,15 @@ def table_path(key: str) -> Path:
     return shipped_folder("materials") / f"{key.replace('/', '_')}.csv"
 
 
+_MAKING = ("thinned ", "linear interpolation ", "formula sampled ", "source covers ", "cut here")
+"""How a note begins that tells the making of a table; it belongs to the status, not to the warnings."""
+
+
 def table_provenance(head: Mapping[str, str]) -> Provenance:
     """Return where the numbers of a shipped table come from."""
     low, _, high = head["range_nm"].partition(" to ")
+    notes = [note for note in head["notes"].split("; ") if note]
+    making = [note for note in notes if note.startswith(_MAKING) or note.endswith("dropped")]
     return Provenance(
         key=head["key"],
         label=head["label"],
@@ -150,8 +159,8 @@ def table_provenance(head: Mapping[str, str]) -> Provenance:
         form=head["form"],
         range_nm=(float(low), float(high)),
         temperature=head["temperature"],
-        status=head["status"],
-        notes=tuple(note for note in head["notes"].split("; ") if note),
+        status="; ".join([head["status"], *making]),
+        notes=tuple(note for note in notes if note not in making),
     )
 
 
@@ -174,9 +183,13 @@ def shipped_table(key: str, *, fitted: bool = True) -> Table:
     lines = [line for line in text.splitlines() if line and not line.startswith("#")][1:]
     cells = [line.split(",") for line in lines]
     wavelength, n, k = np.array(cells, dtype=float).T
-    curve = _fitted_curve(path.stem, text, wavelength, n) if fitted else None
     tolerance = printed_tolerance([row[1] for row in cells])
-    return Table(table_provenance(read_header(path)), wavelength, n, k, tolerance, n_curve=curve)
+    curve = _fitted_curve(path.stem, text, wavelength, n) if fitted else None
+    deviation = None if curve is None else partial(_fitted_deviation, path.stem)
+    if not fitted:
+        curve = fit_curve(PLANCK_EV_NM / wavelength[::-1], n[::-1], tolerance[::-1])
+    provenance = table_provenance(read_header(path))
+    return Table(provenance, wavelength, n, k, tolerance, n_curve=curve, deviation=deviation)
 
 
 def printed_tolerance(cells: list[str]) -> FloatArray:
@@ -227,3 +240,7 @@ def _fitted_curve(stem: str, text: str, wavelength_nm: FloatArray, n: FloatArray
     if f"{stem}.knots" not in curves:  # no spline keeps the shape of its rows
         return monotone_curve(PLANCK_EV_NM / wavelength_nm[::-1], n[::-1])
     return SplineCurve(curves[f"{stem}.knots"], curves[f"{stem}.coefficients"])
+
+
+def _fitted_deviation(stem: str) -> FloatArray:
+    return np.asarray(10.0 ** _curves()[f"{stem}.deviation"].astype(float))

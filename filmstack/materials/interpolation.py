@@ -142,7 +142,7 @@ def _end_slope(h0: float, h1: float, rise0: float, rise1: float) -> float:
     return 3.0 * rise0 if rise0 * rise1 <= 0.0 and abs(slope) > abs(3.0 * rise0) else slope
 
 
-def fit_curve(x: FloatArray, y: FloatArray, tolerance: FloatArray, patience: int = 60) -> Curve:
+def fit_curve(x: FloatArray, y: FloatArray, tolerance: FloatArray, patience: int = 20) -> Curve:
     """Return the smoothest curve that passes every row within its tolerance.
 
     Parameters
@@ -152,7 +152,7 @@ def fit_curve(x: FloatArray, y: FloatArray, tolerance: FloatArray, patience: int
     tolerance : ndarray of float, shape (points,)
         Half a unit of the last printed digit of each row. [1]
     patience : int
-        Most fits with other weights before less smoothing is tried; many rows take a tenth of a second each.
+        Most fits with other weights before less smoothing is tried, where a curve takes many knots and time.
 
     Returns
     -------
@@ -202,9 +202,9 @@ def _smoothest(x: FloatArray, y: FloatArray, tolerance: FloatArray, degree: int,
     """
     for share in (1.0 / 3.0, 0.1, 0.01):
         weight = 1.0 / tolerance
-        for turn in range(patience):
+        for turn in range(60):
             curve = _smoothed(x, y, weight, degree, share * len(x))
-            if curve is None or (turn >= 20 and len(curve.knots) > 0.5 * len(x)):  # slow, and little gain
+            if curve is None or (turn >= patience and len(curve.knots) > 0.5 * len(x)):  # slow, and little gain
                 break
             misfit = np.abs(curve.derivative(x, 0) - y) / tolerance
             if np.all(misfit <= 1.0):

@@ -93,7 +93,7 @@ def split_text(path: Path) -> Text:
             key, _, value = stripped.lstrip("#%/! ").partition(":")
             if key.strip().lower() in _DESCRIPTION and value.strip():
                 described[key.strip().lower()] = value.strip()
-        elif stripped.strip(",;\t "):
+        elif stripped.strip(",;\t ") and not _names_separator(stripped):
             kept.append((number, line))
     if not kept:
         raise MaterialFileError(
@@ -113,7 +113,14 @@ def split_text(path: Path) -> Text:
     if comments and not described:
         notes.append(f"{comments} comment line{'s' if comments > 1 else ''} skipped")
     names = _split(header, separator)
+    while len(names) > 1 and not names[-1]:
+        names.pop()  # a separator at the end of the line
     return Text(path, names, header_line, cells, [number for number, _ in body], comma, described, notes)
+
+
+def _names_separator(line: str) -> bool:
+    """Tell a line such as `sep=;`, by which a spreadsheet names its separator."""
+    return line.lower().startswith("sep=") and len(line) <= 5
 
 
 def _split(line: str, separator: str | None) -> list[str]:

@@ -72,7 +72,7 @@ class Table(Material):
         super().__init__(provenance, allow_gain=allow_gain)
         self.wavelength_nm, self.n, self.k, self.tolerance = wavelength_nm, n, k, tolerance
         self.energy_ev = PLANCK_EV_NM / wavelength_nm[::-1]
-        patience = 60 if len(n) <= 500 else 3
+        patience = 20 if len(n) <= 500 else 1
         self._deviation = deviation
         self.n_curve = n_curve or fit_curve(self.energy_ev, n[::-1], tolerance[::-1], patience)
         self.k_curve: MonotoneCurve = monotone_curve(self.energy_ev, k[::-1])

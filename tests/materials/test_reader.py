@@ -24,6 +24,10 @@ DIALECTS = {
     "quoted": (b'"wavelength_nm","n","k"\n"400","2.41","0.002"\n"500","2.35","0.001"\n"800","2.29","0.0005"\n', ""),
     "exponents": (b"wavelength_nm,n,k\n4e2,2.41,2e-3\n5.0E+02,2.35,1.0E-3\n8e2,2.29,5e-4\n", ""),
     "comma_at_the_end": (b"wavelength_nm,n,k\n400,2.41,0.002,\n500,2.35,0.001,\n800,2.29,0.0005,\n", ""),
+    "spreadsheet": (
+        b"sep=;\r\nwavelength_nm;n;k;\r\n400;2,41;0,002;\r\n500;2,35;0,001;\r\n800;2,29;0,0005;\r\n",
+        ", separated by semicolons, decimal comma",
+    ),
     "columns_swapped": (b"k,n,wavelength_nm\n0.002,2.41,400\n0.001,2.35,500\n0.0005,2.29,800\n", ""),
     "capitals_and_brackets": (b"Wavelength [nm],N,K\n400,2.41,0.002\n500,2.35,0.001\n800,2.29,0.0005\n", ""),
     "comments": (

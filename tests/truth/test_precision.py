@@ -170,29 +170,34 @@ def _compare(media, layer, variable, wavelength, angle, p, found):
             assert error <= 10 * abs(near[name] - wanted), (layer, variable, name, p)
 
 
-@pytest.mark.parametrize("kind", ["lossless", "metal"])
-def test_needle_at_any_depth(kind):
-    # The needle as a layer of 1e-15 nm in the 50-digit reference, one-sided: 1e-12 is left of the second order.
-    media, wavelength, angle = _random(kind, 5)
-    stack = _stack(media)
-    needle = C(1.9, 0.1)
-    layer = 1
-    depths = [0.0, 0.4 * media.d[layer + 1], media.d[layer + 1]]
-    found = fs.needle_gradient(stack, wavelength, angle, material=needle, layer=layer, depth_nm=depths)
-    for row, depth in enumerate(depths):
-        for p in (False, True):
-            with mp.workdps(DIGITS):
-                h, place = mp.mpf(10) ** -15, layer + 1
-                ends = []
-                for thickness in (h, mp.mpf(0)):
-                    n, k, d = list(media.n), list(media.k), list(media.d)
-                    n[place : place + 1], k[place : place + 1] = [n[place], 1.9, n[place]], [k[place], 0.1, k[place]]
-                    d[place : place + 1] = [mp.mpf(depth), thickness, mp.mpf(media.d[place]) - mp.mpf(depth)]
-                    ends.append(solve(Media(n, k, d), wavelength, angle, p))
-                for name in ("R", "T"):
-                    slope = (getattr(ends[0], name) - getattr(ends[1], name)) / h
-                    value = mp.mpf(float(getattr(found, f"d{name}_{'p' if p else 's'}")[row, 0, 0]))
-                    assert abs(value - slope) <= 1e-9 * abs(slope) + 1e-16
+def _with_needle(media, place, depth, needle, thickness):
+    """Return the media with a needle at a depth of the medium at `place`, which keeps its thickness."""
+    n, k, d = list(media.n), list(media.k), list(media.d)
+    n[place : place + 1], k[place : place + 1] = [n[place], needle[0], n[place]], [k[place], needle[1], k[place]]
+    d[place : place + 1] = [mp.mpf(depth), thickness, mp.mpf(media.d[place]) - mp.mpf(depth)]
+    return Media(n, k, d)
+
+
+@pytest.mark.parametrize("route", ["small", "compiled"])
+@pytest.mark.parametrize("kind", KINDS)
+def test_needle_at_any_depth(kind, route):
+    # The needle as a layer of 1e-24 nm in the 50-digit reference.
+    for seed, needle in ((5, (1.9, 0.1)), (8, (2.5, 0.0))):
+        media, wavelength, angle = _random(kind, seed)
+        for layer in (0, len(media.n) - 3):
+            depths = [0.0, 0.4 * media.d[layer + 1], media.d[layer + 1]]
+            with forced(route):
+                arguments = {"material": C(*needle), "layer": layer, "depth_nm": depths}
+                found = fs.needle_gradient(_stack(media), wavelength, angle, **arguments)
+            for row, depth in enumerate(depths):
+                for p, q in ((False, "s"), (True, "p")):
+                    with mp.workdps(DIGITS):
+                        cut = [_with_needle(media, layer + 1, depth, needle, h) for h in (mp.mpf(0), STEP)]
+                        start, end = (solve(m, wavelength, angle, p) for m in cut)
+                        slopes = {n: (getattr(end, n) - getattr(start, n)) / STEP for n in ("r", "t", "R", "T")}
+                    for name, slope in slopes.items():
+                        value = mp.mpmathify(complex(getattr(found, f"d{name}_{q}")[row, 0, 0]))
+                        assert abs(value - slope) <= 1e-9 * abs(slope) + mp.mpf(10) ** -19, (seed, layer, row, q, name)
 
 
 def test_needle_of_the_hosts_own_material_is_the_hosts_thickness():

@@ -14,7 +14,7 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 
 from filmstack.analysis.points import Request, incident_note, request
-from filmstack.analysis.solution import Solution, log10_of_mean, solve
+from filmstack.analysis.solution import Solution, log10_of_mean, solve, total
 from filmstack.errors import ArgumentError, CoherenceError
 from filmstack.materials.material import Material
 
@@ -232,7 +232,7 @@ def _value(solution: Solution, quantity: str, p: bool) -> Any:  # noqa: ANN401 -
             return solution.amplitude_transmittance(p)
         case "A_layers":
             return solution.film_absorptance(p)
-    absorbed = solution.film_absorptance(p).sum(axis=0) + solution.plate_absorptance(p).sum(axis=0)
+    absorbed = total(solution.film_absorptance(p)) + total(solution.plate_absorptance(p))
     return absorbed if quantity == "A" else solution.transmittance(p) + absorbed
 
 

@@ -21,7 +21,7 @@ from filmstack.wave.media import Media
 from filmstack.wave.route import Group, blocking_films
 
 if TYPE_CHECKING:
-    from filmstack.arraytypes import BoolArray, ComplexArray, FloatArray, IntArray
+    from filmstack.arraytypes import BoolArray, ComplexArray, FloatArray
 
 
 class Amplitudes:
@@ -54,6 +54,11 @@ class Amplitudes:
         """Return t, shape (point,)."""
         return as_complex(self.passes.front(p).t)[0]
 
+    @property
+    def lossless(self) -> BoolArray:
+        """Points at which no film and no change of a real index takes or gives power."""
+        return self.group.media.lossless & (self.group.ends.exit[1] == 0.0)[0]
+
     def grazing(self, p: bool) -> BoolArray:
         """Return where nothing changes because the light grazes the stack."""
         return self.passes.front(p).grazing[0]
@@ -84,17 +89,49 @@ class ByIndex(Amplitudes):
         return _stacked(pairs, self.group.shape[1])
 
 
-class ByNeedle(Amplitudes):
-    """A needle at the given levels of a group whose layers were cut at the depths."""
+@dataclass(frozen=True)
+class Place:
+    """Where a needle goes in a group whose films were cut at the depths: interfaces counted from the front."""
 
-    def __init__(self, group: Group, levels: IntArray, needle: Media) -> None:
+    level: int
+    """The needle's own."""
+    front: int
+    """Front face of the host film; also the number of the host's first piece."""
+    back: int
+    """Back face of the host film."""
+
+    def from_behind(self, layers: int) -> Place:
+        """Return the same place as light from behind meets it."""
+        return Place(layers - self.level, layers - self.back, layers - self.front)
+
+
+class ByNeedle(Amplitudes):
+    """A needle at places of a group whose films were cut at the depths."""
+
+    def __init__(self, group: Group, places: list[Place], needle: Media) -> None:
         super().__init__(group)
-        self.levels, self.needle = levels, needle
+        self.places, self.needle = places, needle
 
     def _rows(self, p: bool) -> tuple[ComplexArray, ComplexArray]:
         v = as_complex(self.needle.v_p if p else self.needle.v_s)[0, 0]
         u = as_complex(self.needle.u_p)[0, 0] if p else np.ones_like(v)
-        return _stacked([self.passes.forms(int(level), p, u, v) for level in self.levels], self.group.shape[1])
+        pairs = [self.passes.forms(at.level, at.front, at.back, p, u, v) for at in self.places]
+        return _stacked(pairs, self.group.shape[1])
+
+    @property
+    def lossless(self) -> BoolArray:
+        """Points at which neither a film nor the needle takes or gives power."""
+        return super().lossless & self.needle.lossless
+
+
+def _projected(a: ComplexArray, b: ComplexArray) -> FloatArray:
+    """Return Re(conj(a) b), formed on reals: a complex product of numpy rounds by the shapes it meets."""
+    return a.real * b.real + a.imag * b.imag
+
+
+def _times(a: ComplexArray, b: ComplexArray) -> ComplexArray:
+    """Return a b, formed on reals for the same reason."""
+    return (a.real * b.real - a.imag * b.imag) + 1j * (a.real * b.imag + a.imag * b.real)
 
 
 def _stacked(pairs: list[tuple[ComplexArray, ComplexArray]], points: int) -> tuple[ComplexArray, ComplexArray]:
@@ -131,7 +168,7 @@ class Rows:
         front = self.fronts[0]
         dr, dl = front.rows(p)
         with np.errstate(invalid="ignore"):
-            values = -front.t(p) * dl if transmitted else dr
+            values = -_times(front.t(p), dl) if transmitted else dr
         return np.asarray(self.shaped(np.where(front.grazing(p), 0.0, values)))
 
     def power(self, p: bool, transmitted: bool, factor: complex = 1.0) -> FloatArray:
@@ -142,13 +179,15 @@ class Rows:
         if isinstance(front, ByThickness):
             return np.asarray(self.shaped(front.powers[2 * p + transmitted]))
         dr, dl = front.rows(p)
+        flux = front.passes.front(p).part(front.group.ends.flux(p))[0]
         with np.errstate(invalid="ignore"):
-            if transmitted:
-                flux = front.passes.front(p).part(front.group.ends.flux(p))[0]
-                values = -2.0 * flux * (factor * dl).real
-            else:
-                values = 2.0 * (np.conj(front.r(p)) * factor * dr).real
-        return np.asarray(self.shaped(np.where(front.grazing(p), 0.0, values)))
+            r = front.r(p)
+            by_r, by_t = 2.0 * _projected(r, factor * dr), -2.0 * flux * (factor * dl).real
+            # Without loss dR + dT = 0: the one that is a difference of numbers near 1 is taken from the other.
+            kept = front.lossless & (factor == 1.0)
+            low = flux < _projected(r, r)
+            reflected, passed = np.where(kept & low, -by_t, by_r), np.where(kept & ~low, -by_r, by_t)
+        return np.asarray(self.shaped(np.where(front.grazing(p), 0.0, passed if transmitted else reflected)))
 
     def _through_plates(self, p: bool, transmitted: bool, factor: complex) -> FloatArray:
         """Carry the derivatives of |r|^2 and |t|^2 of each group through the ray sum."""
@@ -165,8 +204,8 @@ class Rows:
             dr, dl = front.rows(p)
             back_dr, _ = back.rows(p)
             with np.errstate(invalid="ignore", divide="ignore"):
-                reflected = 2.0 * (np.conj(front.r(p)) * factor * dr).real
-                back_reflected = 2.0 * (np.conj(back.r(p)) * factor * back_dr).real
+                reflected = 2.0 * _projected(front.r(p), factor * dr)
+                back_reflected = 2.0 * _projected(back.r(p), factor * back_dr)
                 log_transmitted = -2.0 * (factor * dl).real
                 ratio = (
                     reflected + 2.0 * log_transmitted * both * load / gap + back_reflected * both * (load / gap) ** 2

@@ -13,7 +13,7 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
-from filmstack.analysis.gradient_rows import Amplitudes, ByIndex, ByNeedle, ByThickness, Rows, Turned
+from filmstack.analysis.gradient_rows import Amplitudes, ByIndex, ByNeedle, ByThickness, Place, Rows, Turned
 from filmstack.analysis.points import checked_axis, request
 from filmstack.errors import ArgumentError
 from filmstack.materials.material import Material
@@ -289,11 +289,12 @@ def needle_gradient(
     groups, turned = cut_asked.groups(), cut_asked.reversed_groups()
     fronts: list[Amplitudes] = []
     backs: list[Amplitudes] = []
-    for place, group in enumerate(groups):
-        levels = np.array([level for where, level in needles if where == place], dtype=np.int64)
-        fronts.append(ByNeedle(group, levels, needle))
+    for number, group in enumerate(groups):
+        places = [place for where, place in needles if where == number]
+        fronts.append(ByNeedle(group, places, needle))
         if stack.plates:
-            backs.append(ByNeedle(turned[place], len(group.order) - levels, needle))
+            behind = [place.from_behind(len(group.order)) for place in places]
+            backs.append(ByNeedle(turned[number], behind, needle))
     shown = depths if layer is not None else starts[layers] + depths
     return NeedleGradient(
         asked.wavelength_nm, asked.angle_deg[0], asked.notes, Rows(cut_asked, fronts, backs), shown, layers
@@ -325,23 +326,25 @@ def _needle_places(stack: Stack, layer: int | None, depth_nm: ArrayLike | None) 
     return layers, np.minimum(depths - starts[layers], thickness[layers])
 
 
-def _cut(stack: Stack, layers: IntArray, depths: FloatArray) -> tuple[Stack, list[tuple[int, int]]]:
-    """Cut the films at the depths; return the stack and, of each needle, its group and its level there."""
+def _cut(stack: Stack, layers: IntArray, depths: FloatArray) -> tuple[Stack, list[tuple[int, Place]]]:
+    """Cut the films at the depths; return the stack and, of each needle, its group and its place there."""
     pieces: list[Any] = []
-    needles: list[tuple[int, int]] = []
+    needles: list[tuple[int, Place]] = []
     group = level = film = 0
     for piece in stack.layers:
         if not isinstance(piece, Layer):
             pieces.append(piece)
             group, level = group + 1, 0
             continue
-        done = 0.0
+        front, done = level, 0.0
+        inside: list[int] = []
         for depth in depths[layers == film].tolist():
             if depth > done:
                 pieces.append(replace(piece, thickness_nm=depth - done))
                 level += 1
-            needles.append((group, level))
+            inside.append(level)
             done = depth
         pieces.append(replace(piece, thickness_nm=piece.thickness_nm - done))
         level, film = level + 1, film + 1
+        needles += [(group, Place(at, front, level)) for at in inside]
     return Stack(stack.incident, pieces, stack.exit), needles

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from filmstack.analysis.points import Request, request
-from filmstack.analysis.solution import Solution, log10_of_mean, solve
+from filmstack.analysis.solution import Solution, log10_of_mean, solve, total
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -112,12 +112,12 @@ class Spectrum:
     @property
     def A_s(self) -> FloatArray:
         """Absorptance of films and plates for s, the sum of their own. [1]"""
-        return np.asarray(self.A_layers_s.sum(axis=0) + self.A_plates_s.sum(axis=0))
+        return total(self.A_layers_s) + total(self.A_plates_s)
 
     @property
     def A_p(self) -> FloatArray:
         """Absorptance of films and plates for p, the sum of their own. [1]"""
-        return np.asarray(self.A_layers_p.sum(axis=0) + self.A_plates_p.sum(axis=0))
+        return total(self.A_layers_p) + total(self.A_plates_p)
 
     @property
     def A(self) -> FloatArray:

@@ -156,12 +156,24 @@ class Passes:
         rows = [one, np.zeros_like(one), *media.v_s, *media.u_p, *media.v_p]
         return np.ascontiguousarray(np.stack(rows, axis=2)[0])
 
-    def forms(self, level: int, p: bool, u: ComplexArray, v: ComplexArray) -> tuple[ComplexArray, ComplexArray]:
-        """Return dr and d ln(1/t) per nm of a medium (u, v) inserted at an interface, shape (point,)."""
+    def forms(
+        self, level: int, host: int, host_back: int, p: bool, u: ComplexArray, v: ComplexArray
+    ) -> tuple[ComplexArray, ComplexArray]:
+        """Return dr and d ln(1/t) per nm of a medium (u, v) inserted at an interface of a host, shape (point,).
+
+        What the host itself would do is taken at its back face (level `host_back`), the rest at the interface.
+        """
+        row = int(self.group.order[host])
+        own_v = as_complex(self.group.media.v_p if p else self.group.media.v_s)[0, row]
+        own_u = as_complex(self.group.media.u_p)[0, row] if p else np.ones_like(own_v)
         e, h, w0, w1 = self._waves(level, level, p)
+        behind_e, behind_h, _, _ = self._waves(host_back, level, p)
         quadratic, bilinear = (as_complex(pair)[0] for pair in self.factors(p))
         square, product = self._scales(level, level, level, p)
-        return square * quadratic * (v * e * e - u * h * h), product * bilinear * (u * w0 * h + v * w1 * e)
+        own_square, _ = self._scales(host_back, host_back, level, p)
+        change = square * ((v - own_v) * e * e - (u - own_u) * h * h)
+        own = own_square * (own_v * behind_e * behind_e - own_u * behind_h * behind_h)
+        return quadratic * (change + own), product * bilinear * (u * w0 * h + v * w1 * e)
 
     def index(self, layer: int, p: bool) -> tuple[ComplexArray, ComplexArray]:
         """Return dr/dN and d ln(1/t)/dN of a layer, shape (point,)."""

@@ -306,25 +306,41 @@ def bilinear(
 
 
 def gradient_rows(
-    points: int, p: int, layer: int, psi: Any, w: Any, medium: Any, front: Any, out: Any, powers: bool, scaled: bool
+    points: int,
+    p: int,
+    layer: int,
+    psi: Any,
+    behind: Any,
+    w: Any,
+    medium: Any,
+    front: Any,
+    out: Any,
+    powers: bool,
+    scaled: bool,
 ) -> None:
-    """Write one layer's dR, dT, or dr and d ln(1/t), of one polarization (p = 0 or 1)."""
+    """Write one layer's dR, dT, or dr and d ln(1/t), of one polarization (p = 0 or 1).
+
+    Both forms are the same at every depth of the layer. The quadratic one is taken at its back face, where the
+    forward and the backward wave are of one size: at the front of an opaque film it would cancel.
+    """
     k, f, o = 4 * p, FRONT_ROWS * p, (2 if powers else 4) * p
     for i in range(points):
-        er, hi, hr, ei = psi[k, i], psi[k + 1, i], psi[k + 2, i], psi[k + 3, i]
+        er, hi, hr, ei = behind[k, i], behind[k + 1, i], behind[k + 2, i], behind[k + 3, i]
         fr, gi, gr, fi = w[k, i], w[k + 1, i], w[k + 2, i], w[k + 3, i]
         ur, ui, vr, vi = medium[k, i], medium[k + 1, i], medium[k + 2, i], medium[k + 3, i]
         qr, qi = quadratic(er, ei, hr, hi, ur, ui, vr, vi)
+        er, hi, hr, ei = psi[k, i], psi[k + 1, i], psi[k + 2, i], psi[k + 3, i]
         zr, zi = bilinear(er, ei, hr, hi, fr, fi, gr, gi, ur, ui, vr, vi)
         ar, ai = front[f + FORM_QUADRATIC, i], front[f + FORM_QUADRATIC + 1, i]
         br, bi = front[f + FORM_BILINEAR, i], front[f + FORM_BILINEAR + 1, i]
         a_re, a_im = ar * qr - ai * qi, ar * qi + ai * qr
         b_re, b_im = br * zr - bi * zi, br * zi + bi * zr
         if scaled:
-            n, m, n0 = psi[SCALE_S + p, i], w[SCALE_S + p, i], front[f + FRONT_SCALE, i]
-            y = front[f + FRONT_DECAY, i] - psi[DECAY, i]
+            n, m, n0 = behind[SCALE_S + p, i], w[SCALE_S + p, i], front[f + FRONT_SCALE, i]
+            y = front[f + FRONT_DECAY, i] - behind[DECAY, i]
             y = y * ((y > 0.0) * 1.0)
             a_re, a_im = halved(a_re, y, 400.0 * (n0 - n)), halved(a_im, y, 400.0 * (n0 - n))
+            n = psi[SCALE_S + p, i]
             b_re, b_im = halved(b_re, 0.0 * y, 200.0 * (n0 - n - m)), halved(b_im, 0.0 * y, 200.0 * (n0 - n - m))
         if powers:
             out[o, layer, i] = front[f + SHARES, i] * a_re + front[f + SHARES + 1, i] * b_re
@@ -372,6 +388,7 @@ def run_gradient(
     layers = len(order)
     first, last = work
     for j in range(first, last):
-        gradient_rows(points, 0, j, trace[j, 0], back[layers - j, 0], media[order[j]], front, out, powers, scaled)
+        psi, behind, w, medium = trace[j, 0], trace[j + 1, 0], back[layers - j, 0], media[order[j]]
+        gradient_rows(points, 0, j, psi, behind, w, medium, front, out, powers, scaled)
         if both:
-            gradient_rows(points, 1, j, trace[j, 0], back[layers - j, 0], media[order[j]], front, out, powers, scaled)
+            gradient_rows(points, 1, j, psi, behind, w, medium, front, out, powers, scaled)

@@ -135,13 +135,16 @@ class Media:
 
     @cached_property
     def u_p(self) -> Pair:
-        """kappa^2 / N^2, 1 where b = 0; 0 where N = 0, which the caller treats apart."""
-        with np.errstate(divide="ignore", invalid="ignore"):
-            re, im = over(self.v_s, self.v_p)
-        straight = self.direction.of_media().straight
-        none = (self.v_p[0] == 0.0) & (self.v_p[1] == 0.0)
-        re = np.where(straight, 1.0, np.where(none, 0.0, re))
-        return re, np.where(straight | none, 0.0, im)
+        """kappa^2 / N^2, 1 where b = 0; 0 where N = 0, which the caller treats apart.
+
+        The imaginary part is that of -b^2 / N^2, which keeps its digits where b is small.
+        """
+        direction, v = self.direction.of_media(), self.v_p
+        none = (v[0] == 0.0) & (v[1] == 0.0)
+        size = np.where(none, 1.0, v[0] * v[0] + v[1] * v[1])
+        re = (self.v_s[0] * v[0] + self.v_s[1] * v[1]) / size
+        re = np.where(direction.straight, 1.0, np.where(none, 0.0, re))
+        return re, direction.b * direction.b * v[1] / size
 
     @cached_property
     def lossless(self) -> BoolArray:

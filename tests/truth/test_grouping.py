@@ -40,20 +40,12 @@ def _stack(kind):
 KINDS = ("lossless", "dispersive", "metal", "opaque", "evanescent", "empty index", "gain", "plates")
 
 
-def _failing(kinds, known, reason, everywhere=True):
-    """Mark what is known to fail; where it does so on every processor, passing after all is a failure too."""
-    marks = {kind: [pytest.mark.xfail(strict=everywhere, reason=reason)] if kind in known else [] for kind in kinds}
-    return [pytest.param(kind, marks=marks[kind], id=kind) for kind in kinds]
-
-
 def _names(kind):
     names = POWERS if kind == "plates" else POWERS + AMPLITUDES
     return [f"{name}_{q}" for name in names for q in "sp"]
 
 
-@pytest.mark.parametrize(
-    "kind", _failing(KINDS, ("dispersive", "metal"), "the sum over layers rounds in another order for one point alone")
-)
+@pytest.mark.parametrize("kind", KINDS)
 def test_a_point_alone_on_either_route(kind):
     stack = _stack(kind)
     names = [*_names(kind), "A_layers_s", "A_layers_p", "A_plates_s", "A_plates_p"]
@@ -92,15 +84,7 @@ def test_samples_on_either_route(kind):
                     assert found.tobytes() == getattr(single, name).tobytes(), (route, sample, name)
 
 
-@pytest.mark.parametrize(
-    "kind",
-    _failing(
-        [kind for kind in KINDS if kind != "empty index"],
-        ("plates",),
-        "NumPy rounds a complex product with a broadcast operand in another way where the processor fuses it",
-        everywhere=False,
-    ),
-)
+@pytest.mark.parametrize("kind", [kind for kind in KINDS if kind != "empty index"])
 def test_gradients_of_a_point_alone_on_either_route(kind):
     stack = _stack(kind)
     names = [f"d{name}_{q}" for name in ("RT" if kind == "plates" else "RTrt") for q in "sp"]

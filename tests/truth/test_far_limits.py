@@ -189,22 +189,19 @@ def test_a_millimetre_of_metal_inside_a_stack(angle):
         np.testing.assert_array_equal(getattr(s, f"A_layers_{q}")[[0, 2]], 0.0)
 
 
-def _long_row(k):
-    return [(2.35, k, 550.0 / (4 * 2.35)), (1.45, 0.0, 550.0 / (4 * 1.45))] * 5000
+LONG_ROW = [(2.35, 1e-7, 550.0 / (4 * 2.35)), (1.45, 0.0, 550.0 / (4 * 1.45))] * 5000
 
 
 @cache
-def _long_row_at_20_deg(k):
-    return solve(_media((1.0, 0.0), _long_row(k), (1.52, 0.0)), 550.0, 20.0, True)
+def _long_row_at_20_deg():
+    return solve(_media((1.0, 0.0), LONG_ROW, (1.52, 0.0)), 550.0, 20.0, True)
 
 
-@pytest.mark.parametrize("k", [0.0, 1e-7])
-def test_ten_thousand_layers_off_normal(k):
-    s, true = fs.spectrum(_stack((1.0, 0.0), _long_row(k), (1.52, 0.0)), 550.0, 20.0), _long_row_at_20_deg(k)
+def test_ten_thousand_layers_with_loss_off_normal():
+    s, true = fs.spectrum(_stack((1.0, 0.0), LONG_ROW, (1.52, 0.0)), 550.0, 20.0), _long_row_at_20_deg()
     assert s.log10_T_p[0, 0] == pytest.approx(_log10(true.T), rel=1e-12)
     assert s.r_p[0, 0] == pytest.approx(complex(true.r), rel=1e-12)
-    if k:
-        assert s.A_p[0, 0] == pytest.approx(float(mp.fsum(true.A)), rel=1e-11, abs=0.0)
+    assert s.A_p[0, 0] == pytest.approx(float(mp.fsum(true.A)), rel=1e-11, abs=0.0)
 
 
 def test_a_plate_that_lets_nothing_pass_and_its_other_side():

@@ -1,5 +1,7 @@
 """Random stacks against 50 digits by another route, and gradients against high-precision derivatives."""
 
+from functools import cache
+
 import mpmath as mp
 import numpy as np
 import pytest
@@ -32,6 +34,13 @@ def _random(kind, seed):
     return Media(n, k, d), float(rng.uniform(400.0, 900.0)), float(rng.choice([0.0, rng.uniform(0.0, 89.9)]))
 
 
+@cache
+def _truths(kind, seed, p):
+    """Return the reference at a random stack and next to it, one for both routes."""
+    media, wavelength, angle = _random(kind, seed)
+    return tuple(solve(m, wavelength, angle, p) for m in (media, _nudged(media)))
+
+
 def _stack(media):
     layers = [fs.Layer(C(n, k), d) for n, k, d in zip(media.n, media.k, media.d, strict=True)][1:-1]
     return fs.Stack(C(media.n[0], media.k[0]), layers, C(media.n[-1], media.k[-1]))
@@ -59,7 +68,7 @@ def test_spectra_of_random_stacks(kind, route):
         with forced(route):
             s = fs.spectrum(_stack(media), wavelength, angle)
         for p in (False, True):
-            true, near = (solve(m, wavelength, angle, p) for m in (media, _nudged(media)))
+            true, near = _truths(kind, seed, p)
             for name in ("r", "t", "R", "T"):
                 value = mp.mpmathify(complex(getattr(s, f"{name}_{'p' if p else 's'}")[0, 0]))
                 wanted, moved = getattr(true, name), getattr(near, name)
@@ -76,7 +85,7 @@ def test_absorptance_of_each_layer(kind, route):
         with forced(route):
             s = fs.spectrum(_stack(media), wavelength, angle)
         for p, found in ((False, s.A_layers_s), (True, s.A_layers_p)):
-            true, near = (solve(m, wavelength, angle, p) for m in (media, _nudged(media)))
+            true, near = _truths(kind, seed, p)
             with mp.workdps(DIGITS):  # of the reference itself
                 assert abs(true.R + true.T + mp.fsum(true.A) - 1) < mp.mpf(10) ** -30
             for value, wanted, moved in zip(found[:, 0, 0], true.A, near.A, strict=True):
@@ -178,11 +187,23 @@ def _with_needle(media, place, depth, needle, thickness):
     return Media(n, k, d)
 
 
+NEEDLES = {5: (1.9, 0.1), 8: (2.5, 0.0)}
+
+
+@cache
+def _needle_slopes(kind, seed, layer, depth, p):
+    """Differentiate the 50-digit reference by the thickness of a needle, a layer of 1e-24 nm."""
+    media, wavelength, angle = _random(kind, seed)
+    with mp.workdps(DIGITS):
+        cut = [_with_needle(media, layer + 1, depth, NEEDLES[seed], h) for h in (mp.mpf(0), STEP)]
+        start, end = (solve(m, wavelength, angle, p) for m in cut)
+        return {n: (getattr(end, n) - getattr(start, n)) / STEP for n in ("r", "t", "R", "T")}
+
+
 @pytest.mark.parametrize("route", ["small", "compiled"])
 @pytest.mark.parametrize("kind", KINDS)
 def test_needle_at_any_depth(kind, route):
-    # The needle as a layer of 1e-24 nm in the 50-digit reference.
-    for seed, needle in ((5, (1.9, 0.1)), (8, (2.5, 0.0))):
+    for seed, needle in NEEDLES.items():
         media, wavelength, angle = _random(kind, seed)
         for layer in (0, len(media.n) - 3):
             depths = [0.0, 0.4 * media.d[layer + 1], media.d[layer + 1]]
@@ -191,11 +212,7 @@ def test_needle_at_any_depth(kind, route):
                 found = fs.needle_gradient(_stack(media), wavelength, angle, **arguments)
             for row, depth in enumerate(depths):
                 for p, q in ((False, "s"), (True, "p")):
-                    with mp.workdps(DIGITS):
-                        cut = [_with_needle(media, layer + 1, depth, needle, h) for h in (mp.mpf(0), STEP)]
-                        start, end = (solve(m, wavelength, angle, p) for m in cut)
-                        slopes = {n: (getattr(end, n) - getattr(start, n)) / STEP for n in ("r", "t", "R", "T")}
-                    for name, slope in slopes.items():
+                    for name, slope in _needle_slopes(kind, seed, layer, depth, p).items():
                         value = mp.mpmathify(complex(getattr(found, f"d{name}_{q}")[row, 0, 0]))
                         assert abs(value - slope) <= 1e-9 * abs(slope) + mp.mpf(10) ** -19, (seed, layer, row, q, name)
 

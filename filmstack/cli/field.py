@@ -108,7 +108,11 @@ def _page(design: Design, stack: Any, record: dict[str, Any]) -> list[str]:  # n
     lines = [design.name, "|E|^2 over that of the incident wave; the substrate counts as semi-infinite"]
     names = [film.material.label for film in stack.films]
     for case in record["cases"]:
-        lines += ["", f"{case['wavelength_nm']:g} nm, {case['angle_deg']:g} deg, {case['polarization']} polarization"]
+        straight = case["angle_deg"] == 0.0
+        if straight and case["polarization"] == "p":
+            continue
+        seen = "s and p alike" if straight else f"{case['polarization']} polarization"
+        lines += ["", f"{case['wavelength_nm']:g} nm, {case['angle_deg']:g} deg, {seen}"]
         if "largest_volt_per_metre" in case:
             lines.append(f"largest field {case['largest_volt_per_metre']:.4g} V/m")
         rows = [

@@ -94,14 +94,21 @@ def _conditions(result: Phase, of: str) -> str:
 
 
 def _page(design: Design, result: Phase, options: Options, remarks: tuple[str, ...]) -> list[str]:
-    from filmstack.cli.output import format_table
+    from filmstack.cli.output import format_table, material_lines
 
     _, rows = _table(result, options.of)
     lines = [design.name, _conditions(result, options.of), *remarks]
-    headings = ["wavelength\nnm"] + [f"{name} {p}\n{unit}" for p in "sp" for name, unit in _UNITS]
     for angle in dict.fromkeys(result.angle_deg.tolist()):
-        cells = [[f"{row[0]:g}", *(f"{value:.4f}" for value in row[2:])] for row in rows if row[1] == angle]
-        lines += ["", f"angle of incidence {angle:g} deg", *format_table(headings, cells)]
+        alike = angle == 0.0
+        headings = ["wavelength\nnm"]
+        headings += [
+            f"{name}{'' if alike else f' {p}'}\n{unit}" for p in ("s" if alike else "sp") for name, unit in _UNITS
+        ]
+        count = 2 + len(headings) - 1
+        cells = [[f"{row[0]:g}", *(f"{value:.4f}" for value in row[2:count])] for row in rows if row[1] == angle]
+        title = f"angle of incidence {angle:g} deg{', s and p alike' if alike else ''}"
+        lines += ["", title, *format_table(headings, cells)]
+    lines += ["", "materials", *material_lines(design.stack.materials)]
     return [*lines, *(f"note: {note}" for note in result.notes)]
 
 

@@ -86,7 +86,7 @@ def absorbed(group: Group, trace: FloatArray, p: bool) -> FloatArray:
         lossy = media.n[1][:, row] != 0.0
         decay = first[:, kernels.DECAY] - trace[layer, :, kernels.DECAY]
         count = 400.0 * (halvings(first, p) - halvings(trace[layer + 1], p))
-        out[layer] = np.where(lossy, arithmetic.halved(total, decay, count), 0.0)
+        out[layer] = np.where(lossy, arithmetic.halved(total, decay, count) + 0.0, 0.0)
     return out
 
 

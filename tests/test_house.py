@@ -172,6 +172,8 @@ def test_short_answers_load_no_command(word, tmp_path):
         ("spectrum DESIGN --plot all.png", {"numpy", "matplotlib"}),
         ("phase DESIGN", {"numpy", "scipy"}),  # how far the rounding of a table moves the GDD
         ("field DESIGN", {"numpy"}),
+        ("ellipsometry DESIGN", {"numpy"}),
+        ("admittance DESIGN", {"numpy"}),
         ("show DESIGN", {"numpy"}),
         ("materials", {"numpy"}),
         ("materials SiO2 --at 550", {"numpy"}),

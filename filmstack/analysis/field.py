@@ -77,7 +77,7 @@ class Field:
     absorption_per_nm: FloatArray
     net_flux: FloatArray
     notes: tuple[str, ...]
-    _solved: _Solved
+    _solved: Solved
 
     @cached_property
     def intensity(self) -> FloatArray:
@@ -182,7 +182,7 @@ def field(
     (group,) = asked.groups()
     if polarization == "p" and bool(np.any(blocking_films(group))):
         raise ArgumentError("field: a film of N = 0 blocks p at oblique incidence, where its field is not defined")
-    solved = _Solved(asked, group, polarization == "p")
+    solved = Solved(asked, group, polarization == "p")
     depths = _depths(asked, depth_nm)
     layers = np.searchsorted(solved.boundaries, depths, side="right") - 1
     e, h = solved.at(layers, depths)
@@ -221,7 +221,7 @@ def _depths(asked: Request, depth_nm: ArrayLike | None) -> FloatArray:
     return depths
 
 
-class _Solved:
+class Solved:
     """Tangential fields at every interface of a group of one sample, over the incident amplitude."""
 
     def __init__(self, asked: Request, group: Group, p: bool) -> None:

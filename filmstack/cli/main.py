@@ -23,6 +23,8 @@ COMMANDS = {
     "spectrum": "reflectance, transmittance and absorptance of designs over wavelength and angle",
     "phase": "phase, group delay, GDD and TOD of a design",
     "field": "electric field inside a design, its largest values, and where light is absorbed",
+    "ellipsometry": "psi and delta of a design over wavelength and angle",
+    "admittance": "admittance of a design, layer by layer, at one wavelength",
     "show": "the layers of a design as a table, and its index profile as a plot",
     "materials": "list the materials, print n and k, judge a table of your own",
 }

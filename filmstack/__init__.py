@@ -66,6 +66,9 @@ _WHERE = {
     "Field": "analysis.field",
     "phase": "analysis.phase",
     "Phase": "analysis.phase",
+    "transmission_peaks": "analysis.peaks",
+    "Peaks": "analysis.peaks",
+    "Peak": "analysis.peaks",
 }
 
 __all__ = ["__version__", *sorted(_WHERE)]

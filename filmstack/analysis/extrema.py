@@ -1,0 +1,382 @@
+"""Every extremum of a stack's T over photon energy, without a sampling grid: `Stack` -> here -> `peaks`.
+
+T = f / |D|^2, f the flux of the end media and D the wave towards the stack that gives one unit behind it. However
+narrow a peak of T, D(x) is an entire function of the layers' phases, resolved by a few points a half wave of
+the whole optical thickness. So the band is covered by intervals on which D and f of each polarization are
+polynomials, checked against the engine at further points; intervals end at the knots of tabulated indices and are
+halved until the check holds. There the sign of G = f' |D|^2 - f (|D|^2)' is that of dT/dx. A Chebyshev series whose
+first coefficient exceeds the sum of all others in size has no zero: each interval is cut until every piece either
+has no zero of G, or one only because G' has none.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from filmstack.analysis.points import request
+from filmstack.constants import PLANCK_EV_NM
+from filmstack.wave import chebyshev, kernels
+from filmstack.wave.finish import LOG10_2, LOG10_E, Front, halvings
+from filmstack.wave.route import dark, states
+
+if TYPE_CHECKING:
+    from filmstack.arraytypes import AnyArray, BoolArray, ComplexArray, FloatArray, IntArray
+    from filmstack.materials.material import Material
+    from filmstack.stack import Stack
+
+TERMS = 24
+"""Coefficients of a model of D."""
+PHASE = 6.0
+"""Change of the layers' phases over an interval to begin with, for which TERMS coefficients suffice. [rad]"""
+CHECKS = np.array([-0.9731, -0.3127, 0.2691, 0.8917])
+"""Points of an interval at which a model is compared with the engine."""
+RANGE = 1e-3
+"""Least over largest |D| of an interval above which it is halved, so that no digits are lost."""
+CUT = 0.0371
+"""Where a piece is cut: not in its middle, where symmetric designs have their peaks."""
+DEEPEST, FINEST = 44, 52
+"""Most halvings of an interval of the band and of a piece."""
+MOST_PIECES = 50_000
+"""Pieces in hand at which the search gives up, and says so."""
+EPSILON = float(np.finfo(float).eps)
+
+
+@dataclass(frozen=True)
+class Sampled:
+    """D and f of each polarization at points; the true D is the stored one times 2^log2."""
+
+    d: ComplexArray
+    log2: FloatArray
+    flux: FloatArray
+
+
+@dataclass(frozen=True)
+class Models:
+    """Polynomials of D and f on intervals of photon energy, rising.
+
+    Parameters
+    ----------
+    low, high : ndarray, shape (interval,)
+        Ends. [eV]
+    d, flux : ndarray, shapes (interval, polarization, TERMS)
+        Chebyshev coefficients; |D| is 1 at most, and T = flux / |D|^2 times 2^log2.
+    log2 : ndarray, shape (interval,)
+    noise : ndarray, shape (interval,)
+        What rounding and truncation leave uncertain of D, which is 1 at most. [1]
+    resolved : ndarray of bool, shape (interval,)
+        Whether the models met their check.
+    """
+
+    low: FloatArray
+    high: FloatArray
+    d: ComplexArray
+    flux: FloatArray
+    log2: FloatArray
+    noise: FloatArray
+    resolved: BoolArray
+
+    def picked(self, chosen: AnyArray) -> Models:
+        """Return some of the intervals."""
+        return Models(*(getattr(self, name)[chosen] for name in Models.__dataclass_fields__))
+
+    def log2_transmittance(self, energy: FloatArray) -> FloatArray:
+        """Return log2 T at photon energies of the band. [1]"""
+        place = np.clip(np.searchsorted(self.low, energy, side="right") - 1, 0, len(self.low) - 1)
+        low, high = self.low[place], self.high[place]
+        s = ((energy - low) - (high - energy)) / (high - low)
+        d = chebyshev.value(self.d[place], s[:, np.newaxis])
+        flux = chebyshev.value(self.flux[place], s[:, np.newaxis])
+        with np.errstate(divide="ignore", invalid="ignore"):
+            total = np.mean(flux / np.abs(d) ** 2, axis=1)
+            return np.asarray(np.log2(total) + self.log2[place])
+
+
+@dataclass(frozen=True)
+class Extrema:
+    """Maxima and minima of T inside a band, by rising photon energy.
+
+    Parameters
+    ----------
+    energy : ndarray, shape (extremum,)
+        Photon energy. [eV]
+    maximum : ndarray of bool, shape (extremum,)
+        Maximum, else minimum; they alternate.
+    rises : (int, int)
+        Sign of dT/dx at the lower and the upper end of the band; 0 where T does not change.
+    unresolved : tuple of (float, float)
+        Photon energies between which nothing can be said. [eV]
+    models : Models
+        What the search rests on.
+    """
+
+    energy: FloatArray
+    maximum: BoolArray
+    rises: tuple[int, int]
+    unresolved: tuple[tuple[float, float], ...]
+    models: Models
+
+
+def extrema(stack: Stack, low_ev: float, high_ev: float, angle_deg: float, polarizations: tuple[bool, ...]) -> Extrema:
+    """Return every extremum of T, the mean of some polarizations (True for p), between two photon energies."""
+    models = model_band(stack, low_ev, high_ev, angle_deg, polarizations)
+    return _walk(models, *_pieces(models))
+
+
+# Models of D and f.
+
+
+def sample(stack: Stack, energy: FloatArray, angle_deg: float, polarizations: tuple[bool, ...]) -> Sampled:
+    """Return D and f of the engine, shapes (polarization, point)."""
+    ends = [min(material.range_nm[1] for material in stack.materials), max(m.range_nm[0] for m in stack.materials)]
+    asked = request(stack, np.clip(PLANCK_EV_NM / energy, ends[1], ends[0]), angle_deg)
+    (group,) = asked.groups()
+    state, closed = states(group)[0], dark(group)
+    sign = 1.0 - 2.0 * np.mod(state[0, kernels.TURNS], 2.0)
+    d, log2, flux = [], [], []
+    for p in polarizations:
+        re, im = Front(group.ends, state, p, closed).waves[0]
+        d.append(sign * (re[0] + 1j * im[0]))
+        log2.append(0.5 * state[0, kernels.DECAY] * (LOG10_E / LOG10_2) + 200.0 * halvings(state, p)[0])
+        open_ = ~closed if p else np.ones((1, 1), dtype=bool)
+        flux.append(np.where(open_, group.ends.flux(p), 0.0)[0])
+    return Sampled(np.stack(d), np.stack(log2), np.stack(flux))
+
+
+def phase_thickness(stack: Stack, energy: FloatArray) -> FloatArray:
+    """Return N d k0 of every film, shape (film, point). [rad]"""
+    k0 = 2.0 * np.pi * energy / PLANCK_EV_NM
+    index = {film.material: film.material.index(PLANCK_EV_NM / energy) for film in stack.films}
+    rows = [index[film.material] * (film.thickness_nm * k0) for film in stack.films]
+    return np.abs(np.array(rows)) if rows else np.zeros((1, energy.size))
+
+
+def knots(material: Material) -> FloatArray:
+    """Return the photon energies at which a material changes from one formula to another. [eV]"""
+    found = [knots(part) for part in getattr(material, "materials", ())]
+    curve = getattr(material, "n_curve", None)
+    if curve is not None:
+        found.append(np.asarray(getattr(curve, "knots", getattr(curve, "x", ())), dtype=float))
+        k = material.k_curve  # type: ignore[attr-defined]
+        if np.any(k.y != 0.0):
+            found.append(k.x)
+    return np.concatenate(found) if found else np.empty(0)
+
+
+def first_intervals(stack: Stack, low: float, high: float) -> tuple[FloatArray, FloatArray]:
+    """Return intervals that end at knots and over which the phases change little."""
+    inner = np.concatenate([knots(material) for material in stack.materials])
+    inner = np.unique(inner[(inner > low) & (inner < high)])
+    edges = np.concatenate([[low], inner, [high]])
+    edges = edges[np.concatenate([[True], np.diff(edges) > 1e-12 * high])]
+    edges[-1] = high
+    wavelengths = [min(m.range_nm[1] for m in stack.materials), max(m.range_nm[0] for m in stack.materials)]
+    safe = PLANCK_EV_NM / np.clip(PLANCK_EV_NM / edges, wavelengths[1], wavelengths[0])
+    change = np.abs(np.diff(phase_thickness(stack, safe), axis=1)).sum(axis=0)
+    parts = np.maximum(1, np.ceil(change / PHASE)).astype(int)
+    rows = [np.linspace(a, b, n + 1)[:-1] for a, b, n in zip(edges[:-1], edges[1:], parts, strict=True)]
+    cuts = np.concatenate([*rows, [high]])
+    return cuts[:-1], cuts[1:]
+
+
+def model_band(stack: Stack, low: float, high: float, angle_deg: float, polarizations: tuple[bool, ...]) -> Models:
+    """Return models of D and f over a band, checked."""
+    a, b = first_intervals(stack, low, high)
+    phase = float(phase_thickness(stack, np.array([0.5 * (low + high)])).sum())
+    rounding = 4.0 * EPSILON * (8.0 + phase)
+    done: list[Models] = []
+    for level in range(DEEPEST + 1):
+        models, good = _fit(stack, a, b, angle_deg, polarizations, rounding, level)
+        done.append(models.picked(good))
+        a, b = a[~good], b[~good]
+        if not a.size:
+            break
+        middle = 0.5 * (a + b)
+        a, b = np.concatenate([a, middle]), np.concatenate([middle, b])
+    order = np.argsort(np.concatenate([m.low for m in done]))
+    return Models(*(np.concatenate([getattr(m, n) for m in done])[order] for n in Models.__dataclass_fields__))
+
+
+def _fit(
+    stack: Stack,
+    a: FloatArray,
+    b: FloatArray,
+    angle_deg: float,
+    polarizations: tuple[bool, ...],
+    rounding: float,
+    level: int,
+) -> tuple[Models, BoolArray]:
+    """Return models on intervals, and which of them are good or can not be made better."""
+    places = np.concatenate([chebyshev.nodes(TERMS), CHECKS])
+    energy = 0.5 * (a + b)[:, np.newaxis] + 0.5 * (b - a)[:, np.newaxis] * places
+    got = sample(stack, energy.ravel(), angle_deg, polarizations)
+    d, log2, flux = (np.moveaxis(x.reshape(-1, *energy.shape), 0, 1) for x in (got.d, got.log2, got.flux))
+    size = np.log2(np.maximum(np.abs(d), 1e-300)) + log2
+    top = np.max(size, axis=2, keepdims=True)  # of each polarization
+    d = d * np.exp2(log2 - top)
+    log2_flux = -2.0 * top
+    whole = np.max(log2_flux, axis=1, keepdims=True)
+    flux = flux * np.exp2(np.maximum(log2_flux - whole, -900.0))
+    matrix = chebyshev.fit(TERMS)
+    c, f = d[..., :TERMS] @ matrix.T, flux[..., :TERMS] @ matrix.T
+    at = chebyshev.basis(CHECKS, TERMS)
+    largest = np.maximum(np.max(np.abs(flux), axis=2), 1e-300)
+    error_d = np.max(np.abs(c @ at.T - d[..., TERMS:]), axis=2) + np.abs(c[..., -2:]).sum(axis=2)
+    error_f = (np.max(np.abs(f @ at.T - flux[..., TERMS:]), axis=2) + np.abs(f[..., -2:]).sum(axis=2)) / largest
+    error = np.maximum(error_d, error_f).max(axis=1)
+    tolerance = 1e-13 + 4.0 * rounding
+    good = error <= tolerance
+    wide = (np.min(np.abs(d), axis=(1, 2)) < RANGE) & (level < 10)
+    c, f = _without_tail(c, rounding), _without_tail(f, 32.0 * EPSILON)
+    models = Models(a, b, c, f, whole[:, 0, 0], np.maximum(error, rounding), good)
+    return models, (good & ~wide) | (level == DEEPEST) | ((b - a) <= 1e-12 * b)
+
+
+def _without_tail(c: AnyArray, share: float) -> AnyArray:
+    """Drop the last coefficients that are nothing but rounding, which differentiation would enlarge."""
+    tail = np.maximum.accumulate(np.abs(c[..., ::-1]), axis=-1)[..., ::-1]
+    return np.where(tail > share * tail[..., :1], c, 0.0)
+
+
+# Signs of dT/dx.
+
+
+@dataclass(frozen=True)
+class _Piece:
+    """Part first..last (of -1..1) of an interval on which the sign of dT/dx is known, or has one change.
+
+    left and right are the signs at the ends, equal where there is no change, 0 where T is constant to rounding.
+    """
+
+    interval: IntArray
+    first: FloatArray
+    last: FloatArray
+    left: IntArray
+    right: IntArray
+    root: FloatArray
+
+
+def _slope_of(d: ComplexArray, flux: FloatArray, s: FloatArray) -> tuple[FloatArray, FloatArray, FloatArray]:
+    """Return G, what G is to be compared with (T times the same factor), and the least |D|.
+
+    d, flux : shapes (piece, polarization, TERMS); s : shape (point,) or (piece, point).
+    """
+    at = chebyshev.basis(s, TERMS)
+    spec = "cpk,cqk->cpq" if at.ndim == 3 else "cpk,qk->cpq"
+    turn = chebyshev.slope(TERMS).T
+    value, change, f, df = (np.einsum(spec, x, at) for x in (d, d @ turn, flux, flux @ turn))
+    power = value.real**2 + value.imag**2
+    rise = 2.0 * (value.real * change.real + value.imag * change.imag)
+    g, t = df * power - f * rise, f * power
+    least = np.sqrt(power.min(axis=1))
+    if g.shape[1] == 1:
+        return g[:, 0], t[:, 0], least
+    others = power[:, ::-1] ** 2
+    return (g * others).sum(axis=1), (t * others).sum(axis=1), least
+
+
+def _pieces(models: Models) -> tuple[_Piece, BoolArray]:
+    """Cut the intervals until the sign of dT/dx is known on every piece; the flag tells of those where it is not."""
+    count = models.d.shape[1]
+    points = 3 * TERMS if count == 1 else 6 * TERMS
+    s, matrix, turn = chebyshev.nodes(points), chebyshev.fit(points), chebyshev.slope(points)
+    ends = np.array([-1.0, 1.0])
+    interval = np.arange(len(models.low))
+    first, last = np.full(len(interval), -1.0), np.full(len(interval), 1.0)
+    d, flux = models.d, models.flux
+    halves = [chebyshev.part(-1.0, CUT, TERMS).T, chebyshev.part(CUT, 1.0, TERMS).T]
+    done: list[_Piece] = []
+    unknown: list[BoolArray] = []
+    for level in range(FINEST + 1):
+        g, t, least = _slope_of(d, flux, s)
+        with np.errstate(divide="ignore", invalid="ignore"):
+            noise = models.noise[interval][:, np.newaxis] / least
+            # In units of dlnT over the piece, whose share of the interval is the width.
+            share = 0.5 * (last - first)[:, np.newaxis]
+            doubt = np.abs(t) * noise * (TERMS**2 * share + np.abs(_log_slope(d, s)))
+        c = g @ matrix.T
+        rest = np.abs(c[:, 1:]).sum(axis=1)
+        uncertain = doubt.max(axis=1)
+        sure = np.abs(c[:, 0]) - rest > uncertain
+        flat = ~sure & np.all((np.abs(g) <= doubt) | (np.abs(g) * 2.0 <= 1e-14 * np.abs(t)), axis=1)
+        dc = c @ turn.T
+        bent = np.abs(dc[:, 0]) > np.abs(dc[:, 1:]).sum(axis=1)
+        g_end, t_end, least_end = _slope_of(d, flux, ends)
+        with np.errstate(divide="ignore", invalid="ignore"):
+            at_end = np.abs(t_end) * (models.noise[interval][:, np.newaxis] / least_end)
+            doubt_end = at_end * (TERMS**2 * share + np.abs(_log_slope(d, ends)))
+        sign = np.where(np.abs(g_end) > doubt_end, np.sign(g_end), 0.0).astype(int)
+        one = ~sure & ~flat & bent & (sign != 0).any(axis=1)
+        left, right = sign[:, 0].copy(), sign[:, 1].copy()
+        left[one & (left == 0)], right[one & (right == 0)] = right[one & (left == 0)], left[one & (right == 0)]
+        whole = np.sign(c[:, 0]).astype(int)
+        left, right = np.where(sure, whole, left), np.where(sure, whole, right)
+        left, right = np.where(flat, 0, left), np.where(flat, 0, right)
+        lost = ~(sure | flat | one) & (level == FINEST or len(interval) > MOST_PIECES)
+        left, right = np.where(lost, 0, left), np.where(lost, 0, right)
+        ready = sure | flat | one | lost
+        root = np.zeros(len(interval))
+        change = np.flatnonzero(one & (left * right < 0))
+        if change.size:
+            middle = _root(d[change], flux[change], right[change])
+            root[change] = first[change] + 0.5 * (middle + 1.0) * (last - first)[change]
+        done.append(_Piece(*(x[ready] for x in (interval, first, last, left, right, root))))
+        unknown.append(lost[ready])
+        go = ~ready
+        if not go.any():
+            break
+        cut = first[go] + 0.5 * (CUT + 1.0) * (last - first)[go]
+        interval, first, last = (
+            np.concatenate(pair) for pair in ((interval[go], interval[go]), (first[go], cut), (cut, last[go]))
+        )
+        d, flux = (np.concatenate([x[go] @ half for half in halves]) for x in (d, flux))
+    order = np.lexsort(
+        (np.concatenate([piece.first for piece in done]), np.concatenate([piece.interval for piece in done]))
+    )
+    names = _Piece.__dataclass_fields__
+    joined = _Piece(*(np.concatenate([getattr(piece, name) for piece in done])[order] for name in names))
+    return joined, np.concatenate(unknown)[order]
+
+
+def _log_slope(d: ComplexArray, s: FloatArray) -> FloatArray:
+    """Return the largest |D'| / |D| of the polarizations at points."""
+    at = chebyshev.basis(s, TERMS)
+    value, change = d @ at.T, d @ chebyshev.slope(TERMS).T @ at.T
+    return np.asarray(np.max(np.abs(change) / np.abs(value), axis=1))
+
+
+def _root(d: ComplexArray, flux: FloatArray, right: IntArray) -> FloatArray:
+    """Return the one zero of G of each piece by halving."""
+    low, high = np.full(len(d), -1.0), np.full(len(d), 1.0)
+    for _ in range(50):
+        middle = 0.5 * (low + high)
+        g = _slope_of(d, flux, middle[:, np.newaxis])[0][:, 0]
+        beyond = g * right >= 0.0
+        low, high = np.where(beyond, low, middle), np.where(beyond, middle, high)
+    return 0.5 * (low + high)
+
+
+def _walk(models: Models, pieces: _Piece, lost: BoolArray) -> Extrema:
+    """Follow the signs through the band: a maximum stands where T rises and then falls."""
+    middle, half = 0.5 * (models.low + models.high), 0.5 * (models.high - models.low)
+    where = [middle[pieces.interval] + half[pieces.interval] * x for x in (pieces.first, pieces.root, pieces.last)]
+    rows = zip(*(x.tolist() for x in where), pieces.left.tolist(), pieces.right.tolist(), strict=True)
+    energy: list[float] = []
+    maximum: list[bool] = []
+    before, since, begin = 0, float(models.low[0]), 0
+    for first, root, last, left, right in rows:
+        if left == 0:
+            continue
+        begin = begin or left
+        if before not in (0, left):
+            energy.append(0.5 * (since + first))
+            maximum.append(before > 0)
+        if right != left:
+            energy.append(root)
+            maximum.append(left > 0)
+        before, since = right, last
+    gaps = [*zip(where[0][lost].tolist(), where[2][lost].tolist(), strict=True)]
+    gaps += [*zip(models.low[~models.resolved].tolist(), models.high[~models.resolved].tolist(), strict=True)]
+    return Extrema(np.array(energy), np.array(maximum, dtype=bool), (begin, before), tuple(sorted(gaps)), models)

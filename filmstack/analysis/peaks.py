@@ -1,0 +1,387 @@
+"""Transmission peaks of a coherent stack: `Stack` -> here -> tables, plots, requirements.
+
+`extrema` finds every maximum of T in a band; here each is computed once more at its own wavelength lambda0 (1 + eps):
+D and its derivatives at lambda0, widths and half-maximum points from eps, so that the rounding of a wavelength does
+not enter the width of a narrow line.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterator
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from filmstack.analysis.extrema import Extrema, extrema
+from filmstack.analysis.points import checked_axis, request
+from filmstack.analysis.resonances import resonances
+from filmstack.analysis.spectrum import result_of
+from filmstack.constants import PLANCK_EV_NM
+from filmstack.errors import ArgumentError, CoherenceError
+from filmstack.wave.angles import cosine_degrees, sine_degrees
+from filmstack.wave.local import Local, local
+from filmstack.wave.series import Series
+
+if TYPE_CHECKING:
+    from typing import Literal
+
+    import pandas as pd
+    from matplotlib.axes import Axes
+    from numpy.typing import ArrayLike
+
+    from filmstack.arraytypes import FloatArray
+    from filmstack.stack import Stack
+
+ORDER = 4
+"""Taylor coefficients of D next to a peak, beyond the value."""
+SMALL_TERM = 1e-9
+"""Last Taylor term over |D|^2 at a half-maximum point, below which the series serves; else the band's models do."""
+
+NO_LOW = "no half-maximum point on the side of short wavelengths"
+NO_HIGH = "no half-maximum point on the side of long wavelengths"
+
+
+@dataclass(frozen=True)
+class Peak:
+    """One local maximum of T; nan where there is no value, and `note` says why."""
+
+    wavelength_nm: float
+    """Vacuum wavelength of the maximum. [nm]"""
+    transmittance: float
+    """T at the maximum. [1]"""
+    half_low_nm: float
+    """Half-maximum point at the shorter wavelength. [nm]"""
+    half_high_nm: float
+    """Half-maximum point at the longer wavelength. [nm]"""
+    fwhm_nm: float
+    """Full width at half maximum, not formed as a difference of rounded wavelengths. [nm]"""
+    q: float
+    """Frequency over full width in frequency. [1]"""
+    fsr_nm: float
+    """Free spectral range: half the frequency distance of the two neighbours, at this wavelength. [nm]"""
+    finesse: float
+    """Free spectral range over full width, in frequency. [1]"""
+    one_sided: bool
+    """The free spectral range is the distance to the only neighbour, the peak being the first or last of the band."""
+    note: str
+    """Why a value is missing, or empty."""
+
+
+@dataclass(frozen=True, eq=False)
+class Peaks:
+    """The transmission peaks of a band, by rising wavelength; iterable, with a length and an index.
+
+    Parameters
+    ----------
+    peaks : tuple of Peak
+        Every local maximum of T inside the band.
+    band_nm : (float, float)
+        Ends of the band. [nm]
+    angle_deg : float
+        Angle of incidence. [deg]
+    polarization : str
+        s, p or mean.
+    complete : bool
+        Whether the search is closed: no maximum above the rounding of T was missed or invented.
+    resonances : int or None
+        Poles of t with a photon energy in the band and a full width below the width of the band; None if they could
+        not be counted. For mean at oblique incidence, those of s and of p together. Where coupled cavities merge
+        there are more poles than peaks.
+    notes : tuple of str
+        Assumptions made on the way.
+    stack : Stack
+        The stack, for the picture.
+    """
+
+    peaks: tuple[Peak, ...]
+    band_nm: tuple[float, float]
+    angle_deg: float
+    polarization: str
+    complete: bool
+    resonances: int | None
+    notes: tuple[str, ...]
+    stack: Stack
+
+    def __iter__(self) -> Iterator[Peak]:
+        """Go through the peaks by rising wavelength."""
+        return iter(self.peaks)
+
+    def __len__(self) -> int:
+        """Return the number of peaks."""
+        return len(self.peaks)
+
+    def __getitem__(self, place: int) -> Peak:
+        """Return one peak."""
+        return self.peaks[place]
+
+    def to_frame(self) -> pd.DataFrame:
+        """Return a tidy table: a row a peak."""
+        import pandas as pd
+
+        return pd.DataFrame([vars(peak) for peak in self.peaks], columns=list(Peak.__dataclass_fields__))
+
+    def plot(self, ax: Axes | None = None) -> Axes:
+        """Draw T over the band with its peaks on `ax`, or on a new figure, and return the axes."""
+        from filmstack.report.peaks_plot import draw_peaks
+
+        return draw_peaks(self, ax)
+
+
+def transmission_peaks(
+    stack: Stack, band_nm: ArrayLike, angle_deg: float = 0.0, polarization: Literal["s", "p", "mean"] = "s"
+) -> Peaks:
+    """Find every transmission peak of a band, however narrow.
+
+    Parameters
+    ----------
+    stack : Stack
+        Films between two media; no thick plates.
+    band_nm : (float, float)
+        Shortest and longest vacuum wavelength. A peak at the very end of the band is none of it. [nm]
+    angle_deg : float
+        Angle of incidence, below 90. [deg]
+    polarization : {"s", "p", "mean"}
+        T of s, of p, or their mean.
+
+    Returns
+    -------
+    Peaks
+
+    Raises
+    ------
+    CoherenceError
+        If the stack holds a thick plate.
+    ArgumentError
+        If the band, the angle or the polarization is not of the kind.
+    MaterialRangeError
+        If the band reaches outside the data of a material.
+
+    Notes
+    -----
+    The search does not rest on a sampling grid: `filmstack.analysis.extrema`. Widths and finesse as in Born and Wolf,
+    Principles of Optics, section 7.6.
+
+    Examples
+    --------
+    A plate of 1 um and index 2 in air transmits fully where it is a multiple of half waves, at 4000 nm / m:
+
+    >>> import filmstack as fs
+    >>> plate = fs.Stack(fs.constant(1.0), [fs.Layer(fs.constant(2.0), 1000.0)], fs.constant(1.0))
+    >>> [round(peak.wavelength_nm, 6) for peak in fs.transmission_peaks(plate, (450, 700))]
+    [500.0, 571.428571, 666.666667]
+    """
+    low, high, angle = _checked(stack, band_nm, angle_deg, polarization)
+    notes = request(stack, [low, high], angle).notes
+    which = {"s": (False,), "p": (True,), "mean": (False, True)}[polarization]
+    if angle == 0.0:
+        which = which[:1]
+    found = extrema(stack, PLANCK_EV_NM / high, PLANCK_EV_NM / low, angle, which)
+    peaks = _peaks(stack, found, angle, which)
+    counts = [resonances(stack, PLANCK_EV_NM / high, PLANCK_EV_NM / low, angle, p) for p in which]
+    total = None if None in counts else sum(count for count in counts if count is not None)
+    return Peaks(
+        peaks,
+        (low, high),
+        angle,
+        polarization,
+        not found.unresolved,
+        total,
+        (*notes, *_end_notes(found, low, high)),
+        stack,
+    )
+
+
+def _checked(stack: Stack, band_nm: ArrayLike, angle_deg: float, polarization: str) -> tuple[float, float, float]:
+    if polarization not in ("s", "p", "mean"):
+        raise ArgumentError(f"polarization: expected 's', 'p' or 'mean', got {polarization!r}")
+    band = checked_axis("band_nm", band_nm, "nm", 5e-324, math.inf)
+    if band.size != 2 or not band[0] < band[1]:
+        raise ArgumentError(f"band_nm: expected two wavelengths in nm, the shorter first, got {band_nm!r}")
+    angle = checked_axis("angle_deg", angle_deg, "deg", 0.0, 90.0)
+    if angle.size != 1 or angle[0] == 90.0:
+        raise ArgumentError(f"angle_deg: expected one angle below 90 deg, got {angle_deg!r}")
+    request(stack, band, angle)
+    if stack.plates:
+        raise CoherenceError(
+            "transmission_peaks: reflections in a thick plate add by intensity and make no peaks. Drop the plate"
+        )
+    return float(band[0]), float(band[1]), float(angle[0])
+
+
+def _end_notes(found: Extrema, low: float, high: float) -> tuple[str, ...]:
+    notes = []
+    if found.rises[1] > 0:
+        notes.append(f"T rises towards {low:g} nm, the end of the band: a peak may stand beyond it")
+    if found.rises[0] < 0:
+        notes.append(f"T rises towards {high:g} nm, the end of the band: a peak may stand beyond it")
+    for a, b in found.unresolved[:3]:
+        notes.append(f"not resolved from {PLANCK_EV_NM / b:.12g} to {PLANCK_EV_NM / a:.12g} nm")
+    return tuple(notes)
+
+
+@dataclass(frozen=True)
+class Nearby:
+    """T next to each peak: Taylor series in eta, photon energy = that of lambda0 times (1 + eta).
+
+    parts : one a polarization; T is proportional to the sum of flux / power 2^-log2.
+    """
+
+    wavelength: FloatArray
+    parts: tuple[Local, ...]
+
+    def ratio(self, eta: FloatArray) -> FloatArray:
+        """Return T at eta, in units that differ from peak to peak."""
+        least = np.min([part.log2 for part in self.parts], axis=0)
+        rows = [_at(x.flux, eta) / _at(x.power, eta) * np.exp2(least - x.log2) for x in self.parts]
+        return np.asarray(np.sum(rows, axis=0))
+
+    def slope(self, eta: FloatArray) -> tuple[FloatArray, FloatArray]:
+        """Return the first and second derivative of T by eta, in the same units."""
+        least = np.min([part.log2 for part in self.parts], axis=0)
+        first, second = np.zeros_like(eta), np.zeros_like(eta)
+        for x in self.parts:
+            f, df, ddf = (_at(x.flux, eta, j) for j in range(3))
+            w, dw, ddw = (_at(x.power, eta, j) for j in range(3))
+            scale = np.exp2(least - x.log2)
+            first += scale * (df * w - f * dw) / w**2
+            second += scale * ((ddf * w - f * ddw) / w**2 - 2.0 * dw * (df * w - f * dw) / w**3)
+        return first, second
+
+    def last_term(self, eta: FloatArray) -> FloatArray:
+        """Return the last term of |D|^2 over it, the larger of the polarizations."""
+        rows = [np.abs(x.power.c[ORDER].real * eta**ORDER) / np.abs(_at(x.power, eta)) for x in self.parts]
+        return np.asarray(np.max(rows, axis=0))
+
+
+def _at(series: Series, eta: FloatArray, order: int = 0) -> FloatArray:
+    """Return a real series, or a derivative, at eta."""
+    total = np.zeros_like(eta)
+    for k in range(len(series.c) - 1, order - 1, -1):
+        total = total * eta + series.c[k].real * math.perm(k, order)
+    return total
+
+
+def _nearby(stack: Stack, wavelength: FloatArray, angle: float, which: tuple[bool, ...]) -> Nearby:
+    energy = PLANCK_EV_NM / wavelength
+    factorial = np.array([math.factorial(j) for j in range(ORDER + 1)], dtype=float)[:, np.newaxis]
+    power = energy ** np.arange(ORDER + 1)[:, np.newaxis]
+    media: dict[object, Series] = {}
+    for material in stack.materials:
+        known = min(ORDER, material.derivative_order)
+        c = np.zeros((ORDER + 1, wavelength.size), dtype=complex)
+        c[: known + 1] = material.index_derivatives(wavelength, known)
+        c = c / factorial * power
+        media[material] = Series(c.real.astype(complex) if material is stack.incident else c)
+    films = [(film.material, film.thickness_nm) for film in stack.films if film.thickness_nm > 0.0]
+    k0 = Series.variable(np.ones(wavelength.size), ORDER) * (2.0 * np.pi / wavelength)
+    sine, cosine = sine_degrees(angle), cosine_degrees(angle)
+    parts = tuple(local(media, films, (stack.incident, stack.exit), k0, sine, cosine, p) for p in which)
+    return Nearby(wavelength, parts)
+
+
+def _summits(near: Nearby, reach: FloatArray) -> FloatArray:
+    """Return eta of each maximum by Newton's rule from 0, kept within reach."""
+    eta = np.zeros_like(reach)
+    for _ in range(8):
+        first, second = near.slope(eta)
+        with np.errstate(divide="ignore", invalid="ignore"):
+            step = np.where(second < 0.0, -first / second, 0.0)
+        eta = np.where(np.abs(eta + step) <= reach, eta + step, eta)
+    return eta
+
+
+def _peaks(stack: Stack, found: Extrema, angle: float, which: tuple[bool, ...]) -> tuple[Peak, ...]:
+    """Compute the peaks of a search, by rising wavelength."""
+    top = np.flatnonzero(found.maximum)
+    if not top.size:
+        return ()
+    energy, models = found.energy[top], found.models
+    edges = np.concatenate([[models.low[0]], found.energy, [models.high[-1]]])
+    below, above = edges[top], edges[top + 2]  # neighbouring minima, or the band's ends
+    wavelength = PLANCK_EV_NM / energy
+    near = _nearby(stack, wavelength, angle, which)
+    reach = 0.25 * np.minimum(energy - below, above - energy) / energy
+    eta = _summits(near, reach)
+    if np.any(eta != 0.0):
+        wavelength = wavelength / (1.0 + eta)
+        near = _nearby(stack, wavelength, angle, which)
+        eta = _summits(near, reach)
+    energy = PLANCK_EV_NM / wavelength
+    summit = near.ratio(eta)
+    spectrum = result_of(request(stack, wavelength, angle))
+    rows = spectrum.T if len(which) == 2 else spectrum.T_p if which[0] else spectrum.T_s
+    transmittance = rows[0] * summit / near.ratio(np.zeros_like(eta))
+    half = [_half_point(near, found, eta, end, energy) for end in (below, above)]
+    return tuple(_table(wavelength, eta, transmittance, half[0], half[1])[::-1])
+
+
+def _half_point(near: Nearby, found: Extrema, eta: FloatArray, end: FloatArray, energy: FloatArray) -> FloatArray:
+    """Return eta of the half-maximum point between each peak and the minimum or band's end beside it; nan if none."""
+    goal = found.models.log2_transmittance(energy * (1.0 + eta)) - 1.0
+    with np.errstate(invalid="ignore"):
+        there = found.models.log2_transmittance(end) <= goal
+    inner, outer = eta.copy(), (end - energy) / energy
+    series = _bisected(near, eta, outer)
+    for _ in range(60):
+        middle = 0.5 * (inner + outer)
+        with np.errstate(invalid="ignore"):
+            high = found.models.log2_transmittance(energy * (1.0 + middle)) > goal
+        inner, outer = np.where(high, middle, inner), np.where(high, outer, middle)
+    wide = 0.5 * (inner + outer)
+    with np.errstate(invalid="ignore"):
+        fits = np.isfinite(series) & (near.last_term(series) < SMALL_TERM)
+    return np.where(there, np.where(fits, series, wide), np.nan)
+
+
+def _bisected(near: Nearby, eta: FloatArray, end: FloatArray) -> FloatArray:
+    """Return the half-maximum point of the Taylor series, nan where it is not between the peak and the end."""
+    goal = 0.5 * near.ratio(eta)
+    _, second = near.slope(eta)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        # A Lorentzian of this curvature has its half-maximum point here.
+        step = np.sqrt(np.where(second < 0.0, -2.0 * near.ratio(eta) / second, np.nan)) * np.sign(end - eta)
+    inner, outer = eta.copy(), eta + 4.0 * step
+    outer = np.where(np.abs(outer - eta) < np.abs(end - eta), outer, end)
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
+        fine = near.ratio(outer) < goal
+        for _ in range(60):
+            middle = 0.5 * (inner + outer)
+            high = near.ratio(middle) > goal
+            inner, outer = np.where(high, middle, inner), np.where(high, outer, middle)
+    return np.where(fine, 0.5 * (inner + outer), np.nan)
+
+
+def _table(
+    wavelength: FloatArray, eta: FloatArray, transmittance: FloatArray, low: FloatArray, high: FloatArray
+) -> list[Peak]:
+    """Return the peaks by rising photon energy; `low` and `high` are half points by photon energy."""
+    # Relative frequency of each peak and of its neighbours.
+    frequency = (1.0 + eta) / wavelength
+    count = len(wavelength)
+    peaks = []
+    for j in range(count):
+        left, right = max(j - 1, 0), min(j + 1, count - 1)
+        spacing = (frequency[right] - frequency[left]) / (2 if right - left == 2 else 1) if count > 1 else math.nan
+        one_sided = count > 1 and right - left == 1
+        width = (high[j] - low[j]) / (1.0 + eta[j])
+        # lambda = lambda0 / (1 + eta): differences of lambda from those of eta.
+        full = wavelength[j] * (high[j] - low[j]) / ((1.0 + high[j]) * (1.0 + low[j]))
+        note = "; ".join(text for text, x in ((NO_LOW, high[j]), (NO_HIGH, low[j])) if math.isnan(x))
+        peak = wavelength[j] / (1.0 + eta[j])
+        peaks.append(
+            Peak(
+                wavelength_nm=float(peak),
+                transmittance=float(transmittance[j]),
+                half_low_nm=float(wavelength[j] / (1.0 + high[j])),
+                half_high_nm=float(wavelength[j] / (1.0 + low[j])),
+                fwhm_nm=float(full),
+                q=float(1.0 / width),
+                fsr_nm=float(spacing / frequency[j] * peak),
+                finesse=float(spacing / frequency[j] / width),
+                one_sided=one_sided,
+                note=note,
+            )
+        )
+    return peaks

@@ -1,0 +1,125 @@
+"""Transmission peaks against closed forms, published widths and much finer grids."""
+
+import numpy as np
+import pytest
+
+import filmstack as fs
+from filmstack.constants import SPEED_OF_LIGHT_NM_PER_FS
+from filmstack.errors import ArgumentError, CoherenceError
+
+C = fs.constant
+HIGH, LOW = C(2.35), C(1.45)
+
+
+def quarter(material, wavelength, quarters=1):
+    return fs.Layer(material, quarters * wavelength / (4.0 * material.index(wavelength).real))
+
+
+def cavity(pairs, order=1, wavelength=1000.0, low=True, incident=1.52, leaving=1.52):
+    """Return one cavity between mirrors of `pairs` high layers each."""
+    h, w = quarter(HIGH, wavelength), quarter(LOW, wavelength)
+    if low:
+        layers = [*([h, w] * pairs)[:-1], quarter(LOW, wavelength, 2 * order), *([h, w] * pairs)[:-1]]
+    else:
+        layers = [*([h, w] * pairs), quarter(HIGH, wavelength, 2 * order), *([w, h] * pairs)]
+    return fs.Stack(C(incident), layers, C(leaving))
+
+
+# Exact widths of cavity filters of 2.35 / 1.45 in 1.52 over their wavelength, found by a separate program that follows
+# the half-maximum points; within 2 % of the formula of H. A. Macleod, Thin-Film Optical Filters (from memory).
+WIDTHS = [
+    (5, 1, True, 0.00414512083497),
+    (7, 1, True, 0.000593761099273),
+    (5, 2, True, 0.00298574599158),
+    (7, 2, True, 0.000429101894027),
+    (5, 1, False, 0.00254402105759),
+    (7, 1, False, 0.000366088120399),
+]
+
+
+@pytest.mark.parametrize(("pairs", "order", "low", "width"), WIDTHS)
+def test_width_of_a_cavity_filter(pairs, order, low, width):
+    found = fs.transmission_peaks(cavity(pairs, order, low=low), (950.0, 1050.0))
+    assert found.complete
+    assert found.resonances == 1
+    (peak,) = found
+    assert peak.wavelength_nm == pytest.approx(1000.0, rel=1e-14)
+    assert peak.transmittance == pytest.approx(1.0, rel=1e-12)
+    assert peak.fwhm_nm == pytest.approx(1000.0 * width, rel=1e-11)
+    assert peak.half_high_nm - peak.half_low_nm == pytest.approx(peak.fwhm_nm, rel=1e-9)
+    assert np.isnan(peak.finesse)
+
+
+# C. R. Pidgeon, S. D. Smith, J. Opt. Soc. Am. 54, 1459 (1964), for the shift; peaks of this filter at 5 deg, 7 high
+# layers each side, air / filter / 1.52, from a separate program.
+@pytest.mark.parametrize(
+    ("low", "polarization", "shifted", "effective"),
+    [
+        (True, "s", 0.9986188801, 1.6592366),
+        (True, "p", 0.9986194683, 1.6592366),
+        (False, "s", 0.9988850951, 1.8459415),
+        (False, "p", 0.9988845078, 1.8459415),
+    ],
+)
+def test_tilt_of_a_cavity_filter(low, polarization, shifted, effective):
+    stack = cavity(7, low=low, incident=1.0)
+    if not low:  # seven high layers outside the cavity
+        assert len(stack.films) == 29
+    (peak,) = fs.transmission_peaks(stack, (980.0, 1020.0), 5.0, polarization)
+    assert peak.wavelength_nm == pytest.approx(1000.0 * shifted, abs=1e-7)
+    assert peak.wavelength_nm == pytest.approx(
+        1000.0 * np.sqrt(1 - np.sin(np.radians(5.0)) ** 2 / effective**2), abs=2e-3
+    )
+
+
+def test_peaks_of_a_plate():
+    # Born and Wolf, Principles of Optics, section 7.6: full transmission where 2 n d = m lambda.
+    found = fs.transmission_peaks(fs.Stack(C(1.0), [fs.Layer(C(1.5), 1e6)], C(1.0)), (600.1, 610.1))
+    orders = np.arange(np.floor(3e6 / 600.1), 3e6 / 610.1, -1)
+    np.testing.assert_allclose([peak.wavelength_nm for peak in found], 3e6 / orders, rtol=1e-14)
+    assert found.complete
+    assert found.resonances == len(found)
+    # T falls to 0.852 only (checked against (2 n / (n^2 + 1))^2 elsewhere): no half-maximum points, hence no width.
+    assert all(np.isnan(peak.fwhm_nm) and peak.note for peak in found)
+    assert [peak.one_sided for peak in found] == [True] + [False] * (len(found) - 2) + [True]
+    frequency = SPEED_OF_LIGHT_NM_PER_FS / (2 * 1.5 * 1e6)
+    for peak in found:
+        spacing = SPEED_OF_LIGHT_NM_PER_FS / peak.wavelength_nm**2 * peak.fsr_nm
+        assert spacing == pytest.approx(frequency, rel=1e-10)
+
+
+@pytest.mark.parametrize("pairs", [16, 22])
+def test_a_line_too_narrow_for_any_grid(pairs):
+    # Width of a cavity filter by the formula of Macleod (from memory): 4 nL^(2x-1) ns (nH - nL) / (pi nH^(2x) nH);
+    # its error falls with the width.
+    width = 1000.0 * 4 * 1.45 ** (2 * pairs - 1) * 1.52 * 0.9 / (np.pi * 2.35 ** (2 * pairs) * 2.35)
+    (peak,) = found = fs.transmission_peaks(cavity(pairs), (950.0, 1050.0))
+    assert found.complete
+    assert peak.wavelength_nm == pytest.approx(1000.0, rel=1e-14)
+    assert peak.fwhm_nm == pytest.approx(width, rel=1e-4)
+    assert peak.transmittance == pytest.approx(1.0, abs=1e-9)
+
+
+def test_no_peak_where_there_is_none():
+    rising = fs.transmission_peaks(fs.Stack(C(1.0), [fs.Layer(C(1.38), 100.0)], C(1.52)), (600.0, 700.0))
+    assert len(rising) == 0
+    assert rising.complete
+    assert any("600 nm" in note for note in rising.notes)
+    flat = fs.transmission_peaks(fs.Stack(C(1.0), [], C(1.52)), (600.0, 700.0))
+    matched = fs.transmission_peaks(fs.Stack(C(1.5), [fs.Layer(C(1.5), 5e4)], C(1.5)), (600.0, 700.0))
+    assert (len(flat), flat.complete, flat.notes) == (0, True, ())
+    assert (len(matched), matched.complete, matched.notes) == (0, True, ())
+
+
+def test_bad_requests_are_refused():
+    stack = cavity(3)
+    with pytest.raises(
+        ArgumentError, match=r"^band_nm: expected two wavelengths in nm, the shorter first, got \(7, 6\)"
+    ):
+        fs.transmission_peaks(stack, (7, 6))
+    with pytest.raises(ArgumentError, match=r"^polarization: expected 's', 'p' or 'mean', got 'x'"):
+        fs.transmission_peaks(stack, (600, 700), polarization="x")
+    with pytest.raises(ArgumentError, match=r"^angle_deg: expected one angle below 90 deg, got 90"):
+        fs.transmission_peaks(stack, (600, 700), 90)
+    with pytest.raises(CoherenceError, match="Drop the plate"):
+        fs.transmission_peaks(fs.Stack(C(1.0), [fs.Plate(C(1.5), 1.0)], C(1.0)), (600, 700))

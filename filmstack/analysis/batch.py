@@ -78,6 +78,11 @@ class BatchSpectrum:
             return log10_of_mean(s, p) if name == "log10_T" else 0.5 * (s + p)
         raise AttributeError(f"{name!r} was not asked for; this batch holds {', '.join(values)}")
 
+    def __dir__(self) -> list[str]:
+        """List the arrays too."""
+        means = [name[:-2] for name in self.values if name.endswith("_s") and name[:-2] not in _AMPLITUDES]
+        return [*super().__dir__(), *self.values, *means]
+
     def to_frame(self) -> pd.DataFrame:
         """Return a tidy table: a row a sample, angle and wavelength."""
         import pandas as pd

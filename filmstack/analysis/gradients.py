@@ -139,6 +139,12 @@ class NeedleGradient(ThicknessGradient):
 class IndexGradient(_Gradient):
     """Derivatives by n and by k (positive) of each film, shape (layer, angle, wavelength), per unit."""
 
+    def __dir__(self) -> list[str]:
+        """List the derivatives too."""
+        kinds = [f"{kind}{p}" for kind in ("dR", "dT") for p in ("", "_s", "_p")]
+        kinds += [f"{kind}_{p}" for kind in ("dr", "dt") for p in "sp"]
+        return [*super().__dir__(), *(f"{kind}_{variable}" for kind in kinds for variable in ("dn", "dk"))]
+
     def __getattr__(self, name: str) -> Any:  # noqa: ANN401 - real or complex array
         """Compute dR_s_dn ... dt_p_dk; dR_dn, dR_dk, dT_dn, dT_dk are means of s and p."""
         quantity, _, variable = name.rpartition("_")

@@ -13,6 +13,10 @@ if TYPE_CHECKING:
     from filmstack.arraytypes import ComplexArray, FloatArray
 
 
+LARGEST, SMALLEST = 1e9, 1e-30
+"""Indices beyond these are no medium; their fourth powers would leave the range of doubles."""
+
+
 class Constant(Material):
     """N = n - ik at all wavelengths and temperatures."""
 
@@ -60,6 +64,8 @@ def constant(n: float, k: float = 0.0, allow_gain: bool = False) -> Material:
     n, k = float(n), float(k)
     if not (np.isfinite(n) and n >= 0.0):
         raise ArgumentError(f"n: expected a finite index >= 0, got {n:g}")
+    if max(n, abs(k)) > LARGEST or 0.0 < max(n, abs(k)) < SMALLEST:
+        raise ArgumentError(f"n, k: expected 0 or numbers from {SMALLEST:g} to {LARGEST:g}, got n = {n:g}, k = {k:g}")
     if not np.isfinite(k) or (k < 0.0 and not allow_gain):
         raise ArgumentError(
             f"k: expected a finite extinction coefficient >= 0, got {k:g}. Pass allow_gain=True for a medium with gain"

@@ -39,6 +39,12 @@ CUT = 0.0371
 """Where a piece is cut: not in its middle, where symmetric designs have their peaks."""
 DEEPEST, FINEST = 44, 52
 """Most halvings of an interval of the band and of a piece."""
+MOST_INTERVALS = 20_000
+"""Intervals in hand at which the search gives up, and says so."""
+STALLED, LARGEST_NOISE = 1.7, 1e-6
+"""An error that one halving lowers by less than this many powers of two is rounding, if it is below that noise."""
+BLIND, MOST_ROUNDS = 1e-6, 6
+"""Noise over |D| above which a piece is not judged before D is modelled closer to it, and how often that is done."""
 MOST_PIECES = 50_000
 """Pieces in hand at which the search gives up, and says so."""
 EPSILON = float(np.finfo(float).eps)
@@ -121,8 +127,16 @@ class Extrema:
 
 def extrema(stack: Stack, low_ev: float, high_ev: float, angle_deg: float, polarizations: tuple[bool, ...]) -> Extrema:
     """Return every extremum of T, the mean of some polarizations (True for p), between two photon energies."""
-    models = model_band(stack, low_ev, high_ev, angle_deg, polarizations)
-    return _walk(models, *_pieces(models))
+    a, b = first_intervals(stack, low_ev, high_ev)
+    models = model_band(stack, a, b, angle_deg, polarizations)
+    pieces = _pieces(models)
+    for _ in range(MOST_ROUNDS):
+        if not np.any(pieces.blind):
+            break
+        kept, a, b = _closer(models, pieces)
+        models = _joined([kept, model_band(stack, a, b, angle_deg, polarizations)])
+        pieces = _pieces(models)
+    return _walk(models, pieces)
 
 
 # Models of D and f.
@@ -181,22 +195,33 @@ def first_intervals(stack: Stack, low: float, high: float) -> tuple[FloatArray, 
     return cuts[:-1], cuts[1:]
 
 
-def model_band(stack: Stack, low: float, high: float, angle_deg: float, polarizations: tuple[bool, ...]) -> Models:
-    """Return models of D and f over a band, checked."""
-    a, b = first_intervals(stack, low, high)
+def model_band(stack: Stack, a: FloatArray, b: FloatArray, angle_deg: float, polarizations: tuple[bool, ...]) -> Models:
+    """Return models of D and f, checked, on intervals a to b or parts of them."""
+    low, high = a.min(), b.max()
     phase = float(phase_thickness(stack, np.array([0.5 * (low + high)])).sum())
     rounding = 4.0 * EPSILON * (8.0 + phase)
     done: list[Models] = []
+    before = np.full(len(a), np.inf)
     for level in range(DEEPEST + 1):
-        models, good = _fit(stack, a, b, angle_deg, polarizations, rounding, level)
-        done.append(models.picked(good))
-        a, b = a[~good], b[~good]
+        last = level == DEEPEST or len(a) > MOST_INTERVALS
+        models, log2_error, wide = _fit(stack, a, b, angle_deg, polarizations, rounding)
+        # An error that halving does not lower is rounding: it is kept as the noise of the model.
+        floor = (log2_error > before - STALLED) & (models.noise < LARGEST_NOISE)
+        models.resolved[floor] = True
+        ready = (models.resolved & ~wide) | last
+        done.append(models.picked(ready))
+        a, b, before = a[~ready], b[~ready], log2_error[~ready]
         if not a.size:
             break
         middle = 0.5 * (a + b)
-        a, b = np.concatenate([a, middle]), np.concatenate([middle, b])
-    order = np.argsort(np.concatenate([m.low for m in done]))
-    return Models(*(np.concatenate([getattr(m, n) for m in done])[order] for n in Models.__dataclass_fields__))
+        a, b, before = np.concatenate([a, middle]), np.concatenate([middle, b]), np.tile(before, 2)
+    return _joined(done)
+
+
+def _joined(parts: list[Models]) -> Models:
+    """Return models of all intervals, by rising photon energy."""
+    order = np.argsort(np.concatenate([m.low for m in parts]))
+    return Models(*(np.concatenate([getattr(m, n) for m in parts])[order] for n in Models.__dataclass_fields__))
 
 
 def _fit(
@@ -206,9 +231,8 @@ def _fit(
     angle_deg: float,
     polarizations: tuple[bool, ...],
     rounding: float,
-    level: int,
-) -> tuple[Models, BoolArray]:
-    """Return models on intervals, and which of them are good or can not be made better."""
+) -> tuple[Models, FloatArray, BoolArray]:
+    """Return models on intervals, log2 of their absolute errors, and whether |D| has a wide range on them."""
     places = np.concatenate([chebyshev.nodes(TERMS), CHECKS])
     energy = 0.5 * (a + b)[:, np.newaxis] + 0.5 * (b - a)[:, np.newaxis] * places
     got = sample(stack, energy.ravel(), angle_deg, polarizations)
@@ -227,11 +251,10 @@ def _fit(
     error_f = (np.max(np.abs(f @ at.T - flux[..., TERMS:]), axis=2) + np.abs(f[..., -2:]).sum(axis=2)) / largest
     error = np.maximum(error_d, error_f).max(axis=1)
     tolerance = 1e-13 + 4.0 * rounding
-    good = error <= tolerance
-    wide = (np.min(np.abs(d), axis=(1, 2)) < RANGE) & (level < 10)
+    wide = np.min(np.abs(d), axis=(1, 2)) < RANGE
     c, f = _without_tail(c, rounding), _without_tail(f, 32.0 * EPSILON)
-    models = Models(a, b, c, f, whole[:, 0, 0], np.maximum(error, rounding), good)
-    return models, (good & ~wide) | (level == DEEPEST) | ((b - a) <= 1e-12 * b)
+    models = Models(a, b, c, f, whole[:, 0, 0], np.maximum(error, rounding), error <= tolerance)
+    return models, np.max(np.log2(np.maximum(error_d, EPSILON)) + top[:, :, 0], axis=1), wide
 
 
 def _without_tail(c: AnyArray, share: float) -> AnyArray:
@@ -247,7 +270,8 @@ def _without_tail(c: AnyArray, share: float) -> AnyArray:
 class _Piece:
     """Part first..last (of -1..1) of an interval on which the sign of dT/dx is known, or has one change.
 
-    left and right are the signs at the ends, equal where there is no change, 0 where T is constant to rounding.
+    left and right are the signs at the ends, equal where there is no change, 0 where T is constant to rounding. Of a
+    lost piece nothing is known; a blind one is lost because |D| is far below its largest value on the interval.
     """
 
     interval: IntArray
@@ -256,6 +280,8 @@ class _Piece:
     left: IntArray
     right: IntArray
     root: FloatArray
+    lost: BoolArray
+    blind: BoolArray
 
 
 def _slope_of(d: ComplexArray, flux: FloatArray, s: FloatArray) -> tuple[FloatArray, FloatArray, FloatArray]:
@@ -277,8 +303,8 @@ def _slope_of(d: ComplexArray, flux: FloatArray, s: FloatArray) -> tuple[FloatAr
     return (g * others).sum(axis=1), (t * others).sum(axis=1), least
 
 
-def _pieces(models: Models) -> tuple[_Piece, BoolArray]:
-    """Cut the intervals until the sign of dT/dx is known on every piece; the flag tells of those where it is not."""
+def _pieces(models: Models) -> _Piece:
+    """Cut the intervals until the sign of dT/dx is known on every piece."""
     count = models.d.shape[1]
     points = 3 * TERMS if count == 1 else 6 * TERMS
     s, matrix, turn = chebyshev.nodes(points), chebyshev.fit(points), chebyshev.slope(points)
@@ -288,7 +314,6 @@ def _pieces(models: Models) -> tuple[_Piece, BoolArray]:
     d, flux = models.d, models.flux
     halves = [chebyshev.part(-1.0, CUT, TERMS).T, chebyshev.part(CUT, 1.0, TERMS).T]
     done: list[_Piece] = []
-    unknown: list[BoolArray] = []
     for level in range(FINEST + 1):
         g, t, least = _slope_of(d, flux, s)
         with np.errstate(divide="ignore", invalid="ignore"):
@@ -299,8 +324,9 @@ def _pieces(models: Models) -> tuple[_Piece, BoolArray]:
         c = g @ matrix.T
         rest = np.abs(c[:, 1:]).sum(axis=1)
         uncertain = doubt.max(axis=1)
-        sure = np.abs(c[:, 0]) - rest > uncertain
-        flat = ~sure & np.all((np.abs(g) <= doubt) | (np.abs(g) * 2.0 <= 1e-14 * np.abs(t)), axis=1)
+        blind = noise.max(axis=1) > BLIND
+        sure = ~blind & (np.abs(c[:, 0]) - rest > uncertain)
+        flat = ~sure & ~blind & np.all((np.abs(g) <= doubt) | (np.abs(g) * 2.0 <= 1e-14 * np.abs(t)), axis=1)
         dc = c @ turn.T
         bent = np.abs(dc[:, 0]) > np.abs(dc[:, 1:]).sum(axis=1)
         g_end, t_end, least_end = _slope_of(d, flux, ends)
@@ -308,13 +334,13 @@ def _pieces(models: Models) -> tuple[_Piece, BoolArray]:
             at_end = np.abs(t_end) * (models.noise[interval][:, np.newaxis] / least_end)
             doubt_end = at_end * (TERMS**2 * share + np.abs(_log_slope(d, ends)))
         sign = np.where(np.abs(g_end) > doubt_end, np.sign(g_end), 0.0).astype(int)
-        one = ~sure & ~flat & bent & (sign != 0).any(axis=1)
+        one = ~sure & ~flat & ~blind & bent & (sign != 0).any(axis=1)
         left, right = sign[:, 0].copy(), sign[:, 1].copy()
         left[one & (left == 0)], right[one & (right == 0)] = right[one & (left == 0)], left[one & (right == 0)]
         whole = np.sign(c[:, 0]).astype(int)
         left, right = np.where(sure, whole, left), np.where(sure, whole, right)
         left, right = np.where(flat, 0, left), np.where(flat, 0, right)
-        lost = ~(sure | flat | one) & (level == FINEST or len(interval) > MOST_PIECES)
+        lost = blind | (~(sure | flat | one) & (level == FINEST or len(interval) > MOST_PIECES))
         left, right = np.where(lost, 0, left), np.where(lost, 0, right)
         ready = sure | flat | one | lost
         root = np.zeros(len(interval))
@@ -322,8 +348,7 @@ def _pieces(models: Models) -> tuple[_Piece, BoolArray]:
         if change.size:
             middle = _root(d[change], flux[change], right[change])
             root[change] = first[change] + 0.5 * (middle + 1.0) * (last - first)[change]
-        done.append(_Piece(*(x[ready] for x in (interval, first, last, left, right, root))))
-        unknown.append(lost[ready])
+        done.append(_Piece(*(x[ready] for x in (interval, first, last, left, right, root, lost, blind))))
         go = ~ready
         if not go.any():
             break
@@ -336,8 +361,29 @@ def _pieces(models: Models) -> tuple[_Piece, BoolArray]:
         (np.concatenate([piece.first for piece in done]), np.concatenate([piece.interval for piece in done]))
     )
     names = _Piece.__dataclass_fields__
-    joined = _Piece(*(np.concatenate([getattr(piece, name) for piece in done])[order] for name in names))
-    return joined, np.concatenate(unknown)[order]
+    return _Piece(*(np.concatenate([getattr(piece, name) for piece in done])[order] for name in names))
+
+
+def _closer(models: Models, pieces: _Piece) -> tuple[Models, FloatArray, FloatArray]:
+    """Return the models to keep, and intervals for the others that narrow towards their blind pieces."""
+    cuts: list[FloatArray] = []
+    for number in np.unique(pieces.interval[pieces.blind]):
+        here = pieces.blind & (pieces.interval == number)
+        first, last = pieces.first[here], pieces.last[here]
+        inner = [first, last]
+        reach = last - first
+        while np.any(reach < 2.0):
+            inner += [first - reach, last + reach]
+            reach = 8.0 * reach
+        s = np.unique(np.concatenate(inner))
+        s = np.concatenate([[-1.0], s[(s > -1.0 + 1e-9) & (s < 1.0 - 1e-9)], [1.0]])
+        low, high = models.low[number], models.high[number]
+        edges = 0.5 * (low + high) + 0.5 * (high - low) * s
+        edges[0], edges[-1] = low, high
+        cuts.append(np.unique(edges))
+    keep = np.ones(len(models.low), dtype=bool)
+    keep[pieces.interval[pieces.blind]] = False
+    return models.picked(keep), np.concatenate([x[:-1] for x in cuts]), np.concatenate([x[1:] for x in cuts])
 
 
 def _log_slope(d: ComplexArray, s: FloatArray) -> FloatArray:
@@ -358,7 +404,7 @@ def _root(d: ComplexArray, flux: FloatArray, right: IntArray) -> FloatArray:
     return 0.5 * (low + high)
 
 
-def _walk(models: Models, pieces: _Piece, lost: BoolArray) -> Extrema:
+def _walk(models: Models, pieces: _Piece) -> Extrema:
     """Follow the signs through the band: a maximum stands where T rises and then falls."""
     middle, half = 0.5 * (models.low + models.high), 0.5 * (models.high - models.low)
     where = [middle[pieces.interval] + half[pieces.interval] * x for x in (pieces.first, pieces.root, pieces.last)]
@@ -377,6 +423,6 @@ def _walk(models: Models, pieces: _Piece, lost: BoolArray) -> Extrema:
             energy.append(root)
             maximum.append(left > 0)
         before, since = right, last
-    gaps = [*zip(where[0][lost].tolist(), where[2][lost].tolist(), strict=True)]
+    gaps = [*zip(where[0][pieces.lost].tolist(), where[2][pieces.lost].tolist(), strict=True)]
     gaps += [*zip(models.low[~models.resolved].tolist(), models.high[~models.resolved].tolist(), strict=True)]
     return Extrema(np.array(energy), np.array(maximum, dtype=bool), (begin, before), tuple(sorted(gaps)), models)

@@ -330,7 +330,7 @@ def _half_point(near: Nearby, found: Extrema, eta: FloatArray, end: FloatArray, 
             high = found.models.log2_transmittance(energy * (1.0 + middle)) > goal
         inner, outer = np.where(high, middle, inner), np.where(high, outer, middle)
     wide = 0.5 * (inner + outer)
-    with np.errstate(invalid="ignore"):
+    with np.errstate(divide="ignore", invalid="ignore"):
         fits = np.isfinite(series) & (near.last_term(series) < SMALL_TERM)
     return np.where(there, np.where(fits, series, wide), np.nan)
 

@@ -170,6 +170,7 @@ def test_short_answers_load_no_command(word, tmp_path):
         ("spectrum DESIGN", {"numpy"}),
         ("spectrum DESIGN --output all.csv", {"numpy"}),
         ("spectrum DESIGN --plot all.png", {"numpy", "matplotlib"}),
+        ("peaks DESIGN", {"numpy"}),
         ("phase DESIGN", {"numpy", "scipy"}),  # how far the rounding of a table moves the GDD
         ("field DESIGN", {"numpy"}),
         ("ellipsometry DESIGN", {"numpy"}),

@@ -10,7 +10,7 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator
 from dataclasses import dataclass
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Literal
 
 import numpy as np
 
@@ -25,14 +25,14 @@ from filmstack.wave.local import Local, local
 from filmstack.wave.series import Series
 
 if TYPE_CHECKING:
-    from typing import Literal
-
     import pandas as pd
     from matplotlib.axes import Axes
     from numpy.typing import ArrayLike
 
     from filmstack.arraytypes import FloatArray
     from filmstack.stack import Stack
+
+Polarization = Literal["s", "p", "mean"]
 
 ORDER = 4
 """Taylor coefficients of D next to a peak, beyond the value."""
@@ -116,6 +116,28 @@ class Peaks:
         """Return one peak."""
         return self.peaks[place]
 
+    def curve(self, points: int = 1001) -> tuple[FloatArray, FloatArray]:
+        """Return T over the band for a picture, with more points where the peaks are narrow.
+
+        Parameters
+        ----------
+        points : int
+            Evenly spaced points over the band.
+
+        Returns
+        -------
+        ndarray, ndarray
+            Vacuum wavelength, rising [nm], and T [1].
+        """
+        even = np.linspace(*self.band_nm, points)
+        offsets = np.sinh(np.linspace(-6.0, 6.0, 41)) / 20.0
+        near = [peak.wavelength_nm + offsets * peak.fwhm_nm for peak in self.peaks if not math.isnan(peak.fwhm_nm)]
+        tops = [peak.wavelength_nm for peak in self.peaks]
+        wavelength = np.unique(np.concatenate([even, tops, *near]))
+        wavelength = wavelength[(wavelength >= self.band_nm[0]) & (wavelength <= self.band_nm[1])]
+        spectrum = result_of(request(self.stack, wavelength, self.angle_deg))
+        return wavelength, {"s": spectrum.T_s, "p": spectrum.T_p, "mean": spectrum.T}[self.polarization][0]
+
     def to_frame(self) -> pd.DataFrame:
         """Return a tidy table: a row a peak."""
         import pandas as pd
@@ -130,7 +152,7 @@ class Peaks:
 
 
 def transmission_peaks(
-    stack: Stack, band_nm: ArrayLike, angle_deg: float = 0.0, polarization: Literal["s", "p", "mean"] = "s"
+    stack: Stack, band_nm: ArrayLike, angle_deg: float = 0.0, polarization: Polarization = "s"
 ) -> Peaks:
     """Find every transmission peak of a band, however narrow.
 

@@ -21,6 +21,7 @@ DONE, NOT_MET, WRONG_INPUT, INTERRUPTED = 0, 1, 2, 130
 
 COMMANDS = {
     "spectrum": "reflectance, transmittance and absorptance of designs over wavelength and angle",
+    "peaks": "every transmission peak of a design in a band, with width, Q, free spectral range and finesse",
     "phase": "phase, group delay, GDD and TOD of a design",
     "field": "electric field inside a design, its largest values, and where light is absorbed",
     "ellipsometry": "psi and delta of a design over wavelength and angle",

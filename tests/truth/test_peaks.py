@@ -123,3 +123,71 @@ def test_bad_requests_are_refused():
         fs.transmission_peaks(stack, (600, 700), 90)
     with pytest.raises(CoherenceError, match="Drop the plate"):
         fs.transmission_peaks(fs.Stack(C(1.0), [fs.Plate(C(1.5), 1.0)], C(1.0)), (600, 700))
+
+
+def any_stack(rng):
+    """Return a random stack of up to 24 layers, some with loss, dispersion or a thin metal."""
+    loss = 10.0 ** rng.uniform(-6.0, -2.0) if rng.random() < 0.4 else 0.0
+    media = [C(n, loss) for n in rng.uniform(1.3, 2.6, 3)]
+    thickest = np.array([400.0, 400.0, 400.0])
+    if rng.random() < 0.3:
+        media[2] = fs.sellmeier([rng.uniform(1.0, 2.5)], [rng.uniform(0.005, 0.03)], 1.0)
+    if rng.random() < 0.2:
+        media[1], thickest[1] = C(0.1, 3.0), 30.0
+    chosen = rng.integers(0, 3, rng.integers(1, 25))
+    return fs.Stack(C(1.0), [fs.Layer(media[j], thickest[j] * rng.uniform(0.05, 1.0)) for j in chosen], C(1.5))
+
+
+def grid_maxima(stack, band, angle, polarization, finest):
+    """Return wavelength, T and step of the maxima on a grid 100 times finer than the finest width."""
+    points = int(min(max(5_001, 100.0 * (band[1] - band[0]) / finest), 2_000_001))
+    wavelength = np.linspace(*band, points)
+    spectrum = fs.spectrum(stack, wavelength, angle)
+    t = {"s": spectrum.T_s, "p": spectrum.T_p, "mean": spectrum.T}[polarization][0]
+    top = np.flatnonzero((t[1:-1] > t[:-2]) & (t[1:-1] >= t[2:])) + 1
+    wider = np.maximum(t[np.maximum(top - 3, 0)], t[np.minimum(top + 3, points - 1)])
+    top = top[t[top] > wider * (1.0 + 1e-13)]  # above the rounding of the grid's own values
+    return wavelength[top], t[top], wavelength[1] - wavelength[0]
+
+
+@pytest.mark.parametrize("seed", range(10))
+def test_random_stacks_against_a_grid_finer_than_any_line(seed):
+    rng = np.random.default_rng(seed)
+    for _ in range(20):
+        stack, angle = any_stack(rng), float(rng.choice([0.0, 30.0, 60.0]))
+        polarization, band = str(rng.choice(["s", "p", "mean"])), (500.0, 600.0)
+        found = fs.transmission_peaks(stack, band, angle, polarization)
+        assert found.complete
+        widths = [peak.fwhm_nm for peak in found if not np.isnan(peak.fwhm_nm)]
+        wavelength, transmittance, step = grid_maxima(stack, band, angle, polarization, min(widths, default=20.0))
+        assert len(found) == len(wavelength)
+        np.testing.assert_allclose([peak.wavelength_nm for peak in found], wavelength, rtol=0.0, atol=1.01 * step)
+        assert all(peak.transmittance >= t * (1.0 - 1e-13) for peak, t in zip(found, transmittance, strict=True))
+
+
+def coupled(count, outer, inner):
+    """Return half-wave cavities between mirrors of `outer` and `inner` high layers."""
+    h, w, space = quarter(HIGH, 1000.0), quarter(LOW, 1000.0), quarter(LOW, 1000.0, 2)
+    layers = ([h, w] * outer)[:-1]
+    for number in range(count):
+        layers += [space, *([h, w] * (outer if number == count - 1 else inner))[:-1]]
+    return fs.Stack(C(1.52), layers, C(1.52))
+
+
+@pytest.mark.parametrize("count", [2, 3, 4, 5])
+@pytest.mark.parametrize(("outer", "inner"), [(5, 8), (5, 10), (5, 11), (8, 16)])
+def test_coupled_cavities_that_merge(count, outer, inner):
+    found = fs.transmission_peaks(coupled(count, outer, inner), (950.0, 1050.0))
+    assert found.complete
+    assert found.resonances == count  # one pole a cavity, however they merge
+    half_points = [x for peak in found for x in (peak.half_low_nm, peak.half_high_nm) if not np.isnan(x)]
+    edge = 1.5 * max(abs(x - 1000.0) for x in half_points)
+    band = (1000.0 - edge, 1000.0 + edge)
+    wavelength, transmittance, step = grid_maxima(coupled(count, outer, inner), band, 0.0, "s", 0.02 * edge)
+    assert len(found) == len(wavelength)
+    np.testing.assert_allclose([peak.wavelength_nm for peak in found], wavelength, rtol=0.0, atol=1.01 * step)
+    np.testing.assert_allclose([peak.transmittance for peak in found], transmittance, rtol=1e-4)
+    if (outer, inner) == (5, 8):
+        assert len(found) == count
+    if (count, outer, inner) == (2, 5, 11):
+        assert len(found) == 1

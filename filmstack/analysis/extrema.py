@@ -34,7 +34,7 @@ PHASE = 6.0
 CHECKS = np.array([-0.9731, -0.3127, 0.2691, 0.8917])
 """Points of an interval at which a model is compared with the engine."""
 RANGE = 1e-3
-"""Least over largest |D| of an interval above which it is halved, so that no digits are lost."""
+"""Least over largest |D|, or flux, of an interval below which it is halved, so that no digits are lost."""
 CUT = 0.0371
 """Where a piece is cut: not in its middle, where symmetric designs have their peaks."""
 DEEPEST, FINEST = 44, 52
@@ -251,7 +251,8 @@ def _fit(
     error_f = (np.max(np.abs(f @ at.T - flux[..., TERMS:]), axis=2) + np.abs(f[..., -2:]).sum(axis=2)) / largest
     error = np.maximum(error_d, error_f).max(axis=1)
     tolerance = 1e-13 + 4.0 * rounding
-    wide = np.min(np.abs(d), axis=(1, 2)) < RANGE
+    wide = (np.min(np.abs(d), axis=(1, 2)) < RANGE) | np.any(np.min(np.abs(flux), axis=2) < RANGE * largest, axis=1)
+    wide &= np.max(np.abs(flux), axis=(1, 2)) > 0.0
     c, f = _without_tail(c, rounding), _without_tail(f, 32.0 * EPSILON)
     models = Models(a, b, c, f, whole[:, 0, 0], np.maximum(error, rounding), error <= tolerance)
     return models, np.max(np.log2(np.maximum(error_d, EPSILON)) + top[:, :, 0], axis=1), wide
@@ -284,8 +285,21 @@ class _Piece:
     blind: BoolArray
 
 
-def _slope_of(d: ComplexArray, flux: FloatArray, s: FloatArray) -> tuple[FloatArray, FloatArray, FloatArray]:
-    """Return G, what G is to be compared with (T times the same factor), and the least |D|.
+@dataclass(frozen=True)
+class _Slope:
+    """The sign of dT/dx at points of pieces, shapes (piece, point).
+
+    g has that sign; t is T times the same positive factor; doubt is how far g is uncertain; dim the noise over |D|.
+    """
+
+    g: FloatArray
+    t: FloatArray
+    doubt: FloatArray
+    dim: FloatArray
+
+
+def _slope(d: ComplexArray, flux: FloatArray, s: FloatArray) -> tuple[FloatArray, FloatArray, FloatArray, FloatArray]:
+    """Return G and T times the same factor, shape (piece, point), then |D|^2 and |D'| of each polarization.
 
     d, flux : shapes (piece, polarization, TERMS); s : shape (point,) or (piece, point).
     """
@@ -296,72 +310,77 @@ def _slope_of(d: ComplexArray, flux: FloatArray, s: FloatArray) -> tuple[FloatAr
     power = value.real**2 + value.imag**2
     rise = 2.0 * (value.real * change.real + value.imag * change.imag)
     g, t = df * power - f * rise, f * power
-    least = np.sqrt(power.min(axis=1))
     if g.shape[1] == 1:
-        return g[:, 0], t[:, 0], least
+        return g[:, 0], t[:, 0], power, np.abs(change)
     others = power[:, ::-1] ** 2
-    return (g * others).sum(axis=1), (t * others).sum(axis=1), least
+    return (g * others).sum(axis=1), (t * others).sum(axis=1), power, np.abs(change)
+
+
+def _judged(
+    d: ComplexArray, flux: FloatArray, s: FloatArray, noise: FloatArray, share: FloatArray, largest: FloatArray
+) -> _Slope:
+    """Return the slope and its doubts; noise, share of the interval and its largest flux, shape (piece,)."""
+    g, t, power, change = _slope(d, flux, s)
+    f = np.abs(np.einsum("cpk,qk->cpq", flux, chebyshev.basis(s, TERMS))).max(axis=1)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        least = np.sqrt(power.min(axis=1))
+        steep = np.max(change / np.sqrt(power), axis=1)
+        lift = 1.0 / least + largest[:, np.newaxis] / np.maximum(f, 1e-200 * largest[:, np.newaxis])
+        # A polynomial known to the noise has a derivative known to TERMS^2 times that (Markov).
+        doubt = np.abs(t) * noise[:, np.newaxis] * lift * (TERMS**2 * share[:, np.newaxis] + steep)
+        return _Slope(g, t, doubt, noise[:, np.newaxis] / least)
 
 
 def _pieces(models: Models) -> _Piece:
     """Cut the intervals until the sign of dT/dx is known on every piece."""
-    count = models.d.shape[1]
-    points = 3 * TERMS if count == 1 else 6 * TERMS
+    points = (3 if models.d.shape[1] == 1 else 6) * TERMS
     s, matrix, turn = chebyshev.nodes(points), chebyshev.fit(points), chebyshev.slope(points)
-    ends = np.array([-1.0, 1.0])
-    interval = np.arange(len(models.low))
+    interval = np.flatnonzero(models.resolved)
     first, last = np.full(len(interval), -1.0), np.full(len(interval), 1.0)
-    d, flux = models.d, models.flux
+    d, flux = models.d[interval], models.flux[interval]
+    largest = np.maximum(np.abs(models.flux).sum(axis=2).max(axis=1), 1e-290)
     halves = [chebyshev.part(-1.0, CUT, TERMS).T, chebyshev.part(CUT, 1.0, TERMS).T]
-    done: list[_Piece] = []
+    done = [_unknown(np.flatnonzero(~models.resolved))]
     for level in range(FINEST + 1):
-        g, t, least = _slope_of(d, flux, s)
-        with np.errstate(divide="ignore", invalid="ignore"):
-            noise = models.noise[interval][:, np.newaxis] / least
-            # In units of dlnT over the piece, whose share of the interval is the width.
-            share = 0.5 * (last - first)[:, np.newaxis]
-            doubt = np.abs(t) * noise * (TERMS**2 * share + np.abs(_log_slope(d, s)))
-        c = g @ matrix.T
-        rest = np.abs(c[:, 1:]).sum(axis=1)
-        uncertain = doubt.max(axis=1)
-        blind = noise.max(axis=1) > BLIND
-        sure = ~blind & (np.abs(c[:, 0]) - rest > uncertain)
-        flat = ~sure & ~blind & np.all((np.abs(g) <= doubt) | (np.abs(g) * 2.0 <= 1e-14 * np.abs(t)), axis=1)
+        if not interval.size:
+            break
+        known = (models.noise[interval], 0.5 * (last - first), largest[interval])
+        inside, ends = _judged(d, flux, s, *known), _judged(d, flux, np.array([-1.0, 1.0]), *known)
+        c = inside.g @ matrix.T
         dc = c @ turn.T
+        blind = inside.dim.max(axis=1) > BLIND
+        sure = ~blind & (np.abs(c[:, 0]) - np.abs(c[:, 1:]).sum(axis=1) > inside.doubt.max(axis=1))
+        size = np.abs(inside.g)
+        flat = ~sure & ~blind & np.all((size <= inside.doubt) | (2.0 * size <= 1e-14 * np.abs(inside.t)), axis=1)
         bent = np.abs(dc[:, 0]) > np.abs(dc[:, 1:]).sum(axis=1)
-        g_end, t_end, least_end = _slope_of(d, flux, ends)
-        with np.errstate(divide="ignore", invalid="ignore"):
-            at_end = np.abs(t_end) * (models.noise[interval][:, np.newaxis] / least_end)
-            doubt_end = at_end * (TERMS**2 * share + np.abs(_log_slope(d, ends)))
-        sign = np.where(np.abs(g_end) > doubt_end, np.sign(g_end), 0.0).astype(int)
+        sign = np.where(np.abs(ends.g) > ends.doubt, np.sign(ends.g), 0.0).astype(int)
         one = ~sure & ~flat & ~blind & bent & (sign != 0).any(axis=1)
-        left, right = sign[:, 0].copy(), sign[:, 1].copy()
-        left[one & (left == 0)], right[one & (right == 0)] = right[one & (left == 0)], left[one & (right == 0)]
-        whole = np.sign(c[:, 0]).astype(int)
-        left, right = np.where(sure, whole, left), np.where(sure, whole, right)
-        left, right = np.where(flat, 0, left), np.where(flat, 0, right)
         lost = blind | (~(sure | flat | one) & (level == FINEST or len(interval) > MOST_PIECES))
-        left, right = np.where(lost, 0, left), np.where(lost, 0, right)
-        ready = sure | flat | one | lost
+        # An end too close to a zero for its sign takes that of the other: the next piece has the change.
+        left, right = (np.where(sign[:, k] == 0, sign[:, 1 - k], sign[:, k]) for k in (0, 1))
+        whole = np.where(sure, np.sign(c[:, 0]), 0.0).astype(int)
+        left, right = (np.where(sure | flat | lost, whole, x) for x in (left, right))
         root = np.zeros(len(interval))
         change = np.flatnonzero(one & (left * right < 0))
         if change.size:
             middle = _root(d[change], flux[change], right[change])
             root[change] = first[change] + 0.5 * (middle + 1.0) * (last - first)[change]
+        ready = sure | flat | one | lost
         done.append(_Piece(*(x[ready] for x in (interval, first, last, left, right, root, lost, blind))))
         go = ~ready
-        if not go.any():
-            break
         cut = first[go] + 0.5 * (CUT + 1.0) * (last - first)[go]
-        interval, first, last = (
-            np.concatenate(pair) for pair in ((interval[go], interval[go]), (first[go], cut), (cut, last[go]))
-        )
+        first, last = np.concatenate([first[go], cut]), np.concatenate([cut, last[go]])
+        interval = np.tile(interval[go], 2)
         d, flux = (np.concatenate([x[go] @ half for half in halves]) for x in (d, flux))
-    order = np.lexsort(
-        (np.concatenate([piece.first for piece in done]), np.concatenate([piece.interval for piece in done]))
-    )
+    order = np.lexsort((np.concatenate([x.first for x in done]), np.concatenate([x.interval for x in done])))
     names = _Piece.__dataclass_fields__
     return _Piece(*(np.concatenate([getattr(piece, name) for piece in done])[order] for name in names))
+
+
+def _unknown(interval: IntArray) -> _Piece:
+    """Return intervals whose models did not meet their check, as lost pieces."""
+    one, none = np.ones(len(interval)), np.zeros(len(interval), dtype=int)
+    return _Piece(interval, -one, one, none, none, none.astype(float), one > 0.0, one < 0.0)
 
 
 def _closer(models: Models, pieces: _Piece) -> tuple[Models, FloatArray, FloatArray]:
@@ -386,19 +405,12 @@ def _closer(models: Models, pieces: _Piece) -> tuple[Models, FloatArray, FloatAr
     return models.picked(keep), np.concatenate([x[:-1] for x in cuts]), np.concatenate([x[1:] for x in cuts])
 
 
-def _log_slope(d: ComplexArray, s: FloatArray) -> FloatArray:
-    """Return the largest |D'| / |D| of the polarizations at points."""
-    at = chebyshev.basis(s, TERMS)
-    value, change = d @ at.T, d @ chebyshev.slope(TERMS).T @ at.T
-    return np.asarray(np.max(np.abs(change) / np.abs(value), axis=1))
-
-
 def _root(d: ComplexArray, flux: FloatArray, right: IntArray) -> FloatArray:
     """Return the one zero of G of each piece by halving."""
     low, high = np.full(len(d), -1.0), np.full(len(d), 1.0)
     for _ in range(50):
         middle = 0.5 * (low + high)
-        g = _slope_of(d, flux, middle[:, np.newaxis])[0][:, 0]
+        g = _slope(d, flux, middle[:, np.newaxis])[0][:, 0]
         beyond = g * right >= 0.0
         low, high = np.where(beyond, low, middle), np.where(beyond, middle, high)
     return 0.5 * (low + high)
@@ -408,11 +420,15 @@ def _walk(models: Models, pieces: _Piece) -> Extrema:
     """Follow the signs through the band: a maximum stands where T rises and then falls."""
     middle, half = 0.5 * (models.low + models.high), 0.5 * (models.high - models.low)
     where = [middle[pieces.interval] + half[pieces.interval] * x for x in (pieces.first, pieces.root, pieces.last)]
-    rows = zip(*(x.tolist() for x in where), pieces.left.tolist(), pieces.right.tolist(), strict=True)
+    rows = zip(
+        *(x.tolist() for x in where), pieces.left.tolist(), pieces.right.tolist(), pieces.lost.tolist(), strict=True
+    )
     energy: list[float] = []
     maximum: list[bool] = []
     before, since, begin = 0, float(models.low[0]), 0
-    for first, root, last, left, right in rows:
+    for first, root, last, left, right, lost in rows:
+        if lost:
+            before = 0  # what happens across a gap is not known
         if left == 0:
             continue
         begin = begin or left
@@ -424,5 +440,4 @@ def _walk(models: Models, pieces: _Piece) -> Extrema:
             maximum.append(left > 0)
         before, since = right, last
     gaps = [*zip(where[0][pieces.lost].tolist(), where[2][pieces.lost].tolist(), strict=True)]
-    gaps += [*zip(models.low[~models.resolved].tolist(), models.high[~models.resolved].tolist(), strict=True)]
     return Extrema(np.array(energy), np.array(maximum, dtype=bool), (begin, before), tuple(sorted(gaps)), models)

@@ -39,8 +39,12 @@ ORDER = 4
 SMALL_TERM = 1e-9
 """Last Taylor term over |D|^2 at a half-maximum point, below which the series serves; else the band's models do."""
 
+MOST_Q = 1e11
+"""Q above which the rounding of the layers' phases, 1e-16 of a turn, shows in T of a peak."""
+
 NO_LOW = "no half-maximum point on the side of short wavelengths"
 NO_HIGH = "no half-maximum point on the side of long wavelengths"
+TOO_NARROW = "the line is so narrow that the rounding of the layers' phases shows in its T and width"
 
 
 @dataclass(frozen=True)
@@ -199,8 +203,13 @@ def transmission_peaks(
     which = {"s": (False,), "p": (True,), "mean": (False, True)}[polarization]
     if angle == 0.0:
         which = which[:1]
+    elif _blocked(stack, low, high):
+        which = tuple(p for p in which if not p)  # p adds nothing
+    if not which:
+        note = "no p passes a film of N = 0"
+        return Peaks((), (low, high), angle, polarization, True, None, (*notes, note), stack)
     found = extrema(stack, PLANCK_EV_NM / high, PLANCK_EV_NM / low, angle, which)
-    peaks = _peaks(stack, found, angle, which)
+    peaks = _peaks(stack, found, angle, which, polarization)
     counts = [resonances(stack, PLANCK_EV_NM / high, PLANCK_EV_NM / low, angle, p) for p in which]
     total = None if None in counts else sum(count for count in counts if count is not None)
     return Peaks(
@@ -230,6 +239,11 @@ def _checked(stack: Stack, band_nm: ArrayLike, angle_deg: float, polarization: s
             "transmission_peaks: reflections in a thick plate add by intensity and make no peaks. Drop the plate"
         )
     return float(band[0]), float(band[1]), float(angle[0])
+
+
+def _blocked(stack: Stack, low: float, high: float) -> bool:
+    """Return whether a film of N = 0 lets no p pass."""
+    return any(film.thickness_nm > 0.0 and not np.any(film.material.index([low, high])) for film in stack.films)
 
 
 def _end_notes(found: Extrema, low: float, high: float) -> tuple[str, ...]:
@@ -299,7 +313,8 @@ def _nearby(stack: Stack, wavelength: FloatArray, angle: float, which: tuple[boo
     films = [(film.material, film.thickness_nm) for film in stack.films if film.thickness_nm > 0.0]
     k0 = Series.variable(np.ones(wavelength.size), ORDER) * (2.0 * np.pi / wavelength)
     sine, cosine = sine_degrees(angle), cosine_degrees(angle)
-    parts = tuple(local(media, films, (stack.incident, stack.exit), k0, sine, cosine, p) for p in which)
+    with np.errstate(divide="ignore", invalid="ignore"):  # N = 0 at normal incidence has no series
+        parts = tuple(local(media, films, (stack.incident, stack.exit), k0, sine, cosine, p) for p in which)
     return Nearby(wavelength, parts)
 
 
@@ -310,11 +325,13 @@ def _summits(near: Nearby, reach: FloatArray) -> FloatArray:
         first, second = near.slope(eta)
         with np.errstate(divide="ignore", invalid="ignore"):
             step = np.where(second < 0.0, -first / second, 0.0)
-        eta = np.where(np.abs(eta + step) <= reach, eta + step, eta)
+        eta = np.where(np.abs(eta + step) <= reach, eta + step, eta)  # also where the step is no number
     return eta
 
 
-def _peaks(stack: Stack, found: Extrema, angle: float, which: tuple[bool, ...]) -> tuple[Peak, ...]:
+def _peaks(
+    stack: Stack, found: Extrema, angle: float, which: tuple[bool, ...], polarization: Polarization
+) -> tuple[Peak, ...]:
     """Compute the peaks of a search, by rising wavelength."""
     top = np.flatnonzero(found.maximum)
     if not top.size:
@@ -333,8 +350,9 @@ def _peaks(stack: Stack, found: Extrema, angle: float, which: tuple[bool, ...]) 
     energy = PLANCK_EV_NM / wavelength
     summit = near.ratio(eta)
     spectrum = result_of(request(stack, wavelength, angle))
-    rows = spectrum.T if len(which) == 2 else spectrum.T_p if which[0] else spectrum.T_s
-    transmittance = rows[0] * summit / near.ratio(np.zeros_like(eta))
+    rows = {"s": spectrum.T_s, "p": spectrum.T_p, "mean": spectrum.T}[polarization]
+    higher = summit / near.ratio(np.zeros_like(eta))
+    transmittance = rows[0] * np.where(np.isfinite(higher), higher, 1.0)
     half = [_half_point(near, found, eta, end, energy) for end in (below, above)]
     return tuple(_table(wavelength, eta, transmittance, half[0], half[1])[::-1])
 
@@ -390,7 +408,8 @@ def _table(
         width = (high[j] - low[j]) / (1.0 + eta[j])
         # lambda = lambda0 / (1 + eta): differences of lambda from those of eta.
         full = wavelength[j] * (high[j] - low[j]) / ((1.0 + high[j]) * (1.0 + low[j]))
-        note = "; ".join(text for text, x in ((NO_LOW, high[j]), (NO_HIGH, low[j])) if math.isnan(x))
+        doubts = ((NO_LOW, math.isnan(high[j])), (NO_HIGH, math.isnan(low[j])), (TOO_NARROW, MOST_Q * width < 1.0))
+        note = "; ".join(text for text, applies in doubts if applies)
         peak = wavelength[j] / (1.0 + eta[j])
         peaks.append(
             Peak(

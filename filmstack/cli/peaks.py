@@ -152,6 +152,7 @@ def _summary(one: Peaks) -> str:
 
 
 def _peak_lines(one: Peaks) -> list[str]:
+    from filmstack.analysis.peaks import MOST_Q
     from filmstack.cli.output import format_table
 
     if not len(one):
@@ -164,7 +165,7 @@ def _peak_lines(one: Peaks) -> list[str]:
             f"{100 * peak.transmittance:.4f}",
             *("-" if _missing(x) else f"{x:.{places}f}" for x in (peak.half_low_nm, peak.half_high_nm)),
             *("-" if _missing(x) else f"{x:.5g}" for x in (peak.fwhm_nm, peak.q, peak.fsr_nm, peak.finesse)),
-            "one-sided FSR" if peak.one_sided else "",
+            "; ".join(["one-sided FSR"] * peak.one_sided + ["at the limit of rounding"] * (peak.q > MOST_Q)),
         ]
         for peak in one.peaks[:MOST_ROWS]
     ]
@@ -182,7 +183,7 @@ def _peak_lines(one: Peaks) -> list[str]:
     lines = format_table(headings, rows, left=(8,))
     if len(one) > MOST_ROWS:
         lines.append(f"... {len(one) - MOST_ROWS} more; --output writes all")
-    if any(peak.note for peak in one):
+    if any(_missing(peak.fwhm_nm) for peak in one):
         lines.append("-: T does not fall to half before the next peak or the end of the band")
     if len(one) == 1:
         lines.append("no FSR: a single peak has no neighbour in the band")

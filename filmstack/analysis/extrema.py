@@ -162,7 +162,7 @@ def sample(stack: Stack, energy: FloatArray, angle_deg: float, polarizations: tu
 def phase_thickness(stack: Stack, energy: FloatArray) -> FloatArray:
     """Return N d k0 of every film, shape (film, point). [rad]"""
     k0 = 2.0 * np.pi * energy / PLANCK_EV_NM
-    index = {film.material: film.material.index(PLANCK_EV_NM / energy) for film in stack.films}
+    index = {material: material.index(PLANCK_EV_NM / energy) for material in {film.material for film in stack.films}}
     rows = [index[film.material] * (film.thickness_nm * k0) for film in stack.films]
     return np.abs(np.array(rows)) if rows else np.zeros((1, energy.size))
 

@@ -34,10 +34,11 @@ if TYPE_CHECKING:
 
 Polarization = Literal["s", "p", "mean"]
 
-ORDER = 4
+ORDER = 6
 """Taylor coefficients of D next to a peak, beyond the value."""
-SMALL_TERM = 1e-9
-"""Last Taylor term over |D|^2 at a half-maximum point, below which the series serves; else the band's models do."""
+SMALL_TERM = 1e-11
+"""First term that the series of |D|^2 leaves out, over it, below which it gives the half-maximum points; else the
+band's models do."""
 
 MOST_Q = 1e11
 """Q above which the rounding of the layers' phases, 1e-16 of a turn, shows in T of a peak."""
@@ -285,9 +286,12 @@ class Nearby:
             second += scale * ((ddf * w - f * ddw) / w**2 - 2.0 * dw * (df * w - f * dw) / w**3)
         return first, second
 
-    def last_term(self, eta: FloatArray) -> FloatArray:
-        """Return the last term of |D|^2 over it, the larger of the polarizations."""
-        rows = [np.abs(x.power.c[ORDER].real * eta**ORDER) / np.abs(_at(x.power, eta)) for x in self.parts]
+    def left_out(self, eta: FloatArray) -> FloatArray:
+        """Return about the first term that |D|^2 leaves out, over |D|^2, the larger of the polarizations."""
+        rows = []
+        for part in self.parts:
+            terms = [np.abs(part.power.c[k].real * eta**k) for k in (ORDER - 2, ORDER)]
+            rows.append(terms[1] * np.sqrt(terms[1] / np.maximum(terms[0], 1e-300)) / np.abs(_at(part.power, eta)))
         return np.asarray(np.max(rows, axis=0))
 
 
@@ -305,7 +309,7 @@ def _nearby(stack: Stack, wavelength: FloatArray, angle: float, which: tuple[boo
     power = energy ** np.arange(ORDER + 1)[:, np.newaxis]
     media: dict[object, Series] = {}
     for material in stack.materials:
-        known = min(ORDER, material.derivative_order)
+        known = min(ORDER, material.derivative_order)  # further terms of N do not show over a narrow line
         c = np.zeros((ORDER + 1, wavelength.size), dtype=complex)
         c[: known + 1] = material.index_derivatives(wavelength, known)
         c = c / factorial * power
@@ -371,7 +375,7 @@ def _half_point(near: Nearby, found: Extrema, eta: FloatArray, end: FloatArray, 
         inner, outer = np.where(high, middle, inner), np.where(high, outer, middle)
     wide = 0.5 * (inner + outer)
     with np.errstate(divide="ignore", invalid="ignore"):
-        fits = np.isfinite(series) & (near.last_term(series) < SMALL_TERM)
+        fits = np.isfinite(series) & (near.left_out(series) < SMALL_TERM)
     return np.where(there, np.where(fits, series, wide), np.nan)
 
 

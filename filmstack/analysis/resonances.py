@@ -100,14 +100,17 @@ def _front(stack: Stack, z: ComplexArray, angle_deg: float, p: bool) -> ComplexA
     k0 = 2.0 * np.pi * z / PLANCK_EV_NM
     # Amplitudes of the waves forward and back: next to no reflection at all, sums of fields would cancel.
     forward, back, behind = np.ones_like(z), np.zeros_like(z), y[stack.exit]
+    turns: dict[tuple[Material, float], tuple[ComplexArray, ComplexArray, ComplexArray]] = {}
     with np.errstate(all="ignore"):
         for film in reversed(stack.films):
             here = y[film.material]
             forward, back = _crossed(forward, back, here, behind)
-            delta = kappa[film.material] * (k0 * film.thickness_nm)
-            largest = np.where(back == 0.0, -delta.imag, np.abs(delta.imag))
-            forward = forward * np.exp(1j * delta.real + (-delta.imag - largest))
-            back = back * np.exp(-1j * delta.real + np.minimum(delta.imag - largest, 0.0))
+            key = (film.material, film.thickness_nm)
+            if key not in turns:
+                turns[key] = _turns(kappa[film.material] * (k0 * film.thickness_nm))
+            there, there_alone, back_again = turns[key]
+            forward = forward * np.where(back == 0.0, there_alone, there)
+            back = back * back_again
             behind = here
         first = n[stack.incident] / cosine if p else n[stack.incident] * cosine
         d, _ = _crossed(forward, back, first, behind)
@@ -122,3 +125,13 @@ def _crossed(
     b = ((here - behind) * forward + (here + behind) * back) / here
     size = np.maximum(np.abs(a), np.abs(b))
     return a / size, b / size
+
+
+def _turns(delta: ComplexArray) -> tuple[ComplexArray, ComplexArray, ComplexArray]:
+    """Return what a layer does to the waves, over exp|Im delta|: forward, forward alone (of size 1), back.
+
+    Scales are real and positive, so that the turns of D stay.
+    """
+    there = np.exp(1j * delta.real)
+    grow = np.abs(delta.imag)
+    return there * np.exp(-delta.imag - grow), there, np.conj(there) * np.exp(delta.imag - grow)

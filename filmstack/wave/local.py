@@ -68,11 +68,13 @@ def local(
     flux_out = real(e * conjugate(h))
     grown = leaving._like(0.0)
     log2 = np.zeros(leaving.c.shape[1:])
+    steps: dict[tuple[Hashable, float], tuple[Series, Series, Series | None]] = {}
     for number, (key, d) in enumerate(reversed(list(films)), start=1):
-        delta = kappa[key] * k0 * d
-        if np.any(delta.c.imag):
-            grown = grown - Series(delta.c.imag.astype(complex))
-        cosine_of, sine_of = faded_cosine_sine(delta)
+        if (key, d) not in steps:
+            steps[key, d] = _step(kappa[key] * k0 * d)
+        cosine_of, sine_of, grows = steps[key, d]
+        if grows is not None:
+            grown = grown + grows
         y = admittance[key]
         e, h = cosine_of * e + 1j * (sine_of / y) * h, 1j * (sine_of * y) * e + cosine_of * h
         if number % RESCALE_EVERY == 0:
@@ -85,3 +87,9 @@ def local(
     start = grown.c[0].real.copy()
     power = power * exp(2.0 * (grown - start))
     return Local(power, 4.0 * real(a1 * a2) * flux_out, log2 + 2.0 * start / np.log(2.0))
+
+
+def _step(delta: Series) -> tuple[Series, Series, Series | None]:
+    """Return cos and sin of delta over exp|Im delta|, and |Im delta| unless it is 0."""
+    faded = faded_cosine_sine(delta)
+    return *faded, Series(-delta.c.imag.astype(complex)) if np.any(delta.c.imag) else None

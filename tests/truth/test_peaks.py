@@ -1,7 +1,9 @@
 """Transmission peaks against closed forms, published widths and much finer grids."""
 
+import mpmath as mp
 import numpy as np
 import pytest
+from truth.reference import Media, solve
 
 import filmstack as fs
 from filmstack.constants import SPEED_OF_LIGHT_NM_PER_FS
@@ -191,3 +193,98 @@ def test_coupled_cavities_that_merge(count, outer, inner):
         assert len(found) == count
     if (count, outer, inner) == (2, 5, 11):
         assert len(found) == 1
+
+
+def airy(reflectance):
+    """Return the index of two media whose face to air has this reflectance."""
+    return (1.0 + np.sqrt(reflectance)) / (1.0 - np.sqrt(reflectance))
+
+
+@pytest.mark.parametrize(
+    ("reflectance", "finesse"),
+    # Exact finesse of an Airy function: pi / (2 asin((1 - R) / (2 sqrt R))). N. Ismail et al., Opt. Express 24, 16366
+    # (2016).
+    [(0.5, 4.34681580829), (0.9, 29.7899558830), (0.99, 312.583206682), (0.999, 3140.02133340)],
+)
+def test_finesse_of_an_air_gap(reflectance, finesse):
+    n = C(airy(reflectance))
+    found = fs.transmission_peaks(fs.Stack(n, [fs.Layer(C(1.0), 1e6)], n), (632.0, 634.0))
+    assert found.complete
+    assert found.resonances == len(found) == 10
+    for peak in found.peaks[1:-1]:
+        assert peak.finesse == pytest.approx(finesse, rel=1e-9)
+        assert peak.transmittance == pytest.approx(1.0, rel=1e-9)
+        # 1.000 mm of air: c / 2d = 149.896229 GHz; at R = 0.99 the exact width is 0.47954024975 GHz.
+        assert 299792.458 / peak.wavelength_nm**2 * peak.fsr_nm * 1e3 == pytest.approx(149.896229, rel=1e-8)
+        if reflectance == 0.99:
+            assert 299792458.0 / peak.wavelength_nm / peak.q == pytest.approx(0.47954024975, rel=1e-9)
+
+
+def test_finesse_of_a_million():
+    # Lines of 0.01 pm, 10 nm apart, in a band of 100 nm: an air gap of 18 um between faces of R = 1 - pi / 1e6.
+    n = C(airy(1.0 - np.pi * 1e-6))
+    found = fs.transmission_peaks(fs.Stack(n, [fs.Layer(C(1.0), 18_000.0)], n), (550.5, 650.5))
+    assert found.complete
+    assert [peak.wavelength_nm for peak in found] == pytest.approx([36_000.0 / m for m in range(65, 55, -1)], rel=1e-12)
+    assert found.resonances == 10
+    for peak in found.peaks[1:-1]:
+        assert peak.finesse == pytest.approx(1e6, rel=1e-5)
+        assert peak.fwhm_nm == pytest.approx(1e-5, rel=0.2)
+
+
+@pytest.mark.parametrize(("pairs", "digits"), [(7, 1e-11), (16, 1e-10), (22, 1e-7)])
+def test_width_against_fifty_digits(pairs, digits):
+    # Root of T = T_max / 2 on both sides by the Airy recursion of `reference`; the last line is 0.3 fm wide.
+    stack = cavity(pairs)
+    (peak,) = fs.transmission_peaks(stack, (950.0, 1050.0))
+    n = [1.52, *(float(film.material.index(1000.0).real) for film in stack.films), 1.52]
+    media = Media(n, [0.0] * len(n), [0.0, *stack.thickness_nm.tolist(), 0.0])
+    with mp.workdps(50):
+
+        def excess(wavelength):
+            return solve(media, wavelength, 0, False).T - mp.mpf(1) / 2
+
+        half = mp.mpf(peak.fwhm_nm) / 2
+        ends = [
+            mp.findroot(excess, (peak.wavelength_nm + side * half, peak.wavelength_nm + side * half * 1.01), tol=1e-30)
+            for side in (-1, 1)
+        ]
+        assert peak.fwhm_nm == pytest.approx(float(ends[1] - ends[0]), rel=digits)
+
+
+def test_absorbing_and_dispersive_media():
+    # Silver of a table between high-index films: the only check is the grid, at both oblique polarizations.
+    silver, high = fs.material("Ag"), fs.material("TiO2")
+    films = [(high, 60.0), (silver, 40.0), (high, 120.0), (silver, 40.0), (high, 60.0)]
+    stack = fs.Stack(fs.material("air"), [fs.Layer(*film) for film in films], fs.material("glass"))
+    for polarization in ("s", "p", "mean"):
+        found = fs.transmission_peaks(stack, (450.0, 900.0), 30.0, polarization)
+        wavelength, transmittance, step = grid_maxima(stack, (450.0, 900.0), 30.0, polarization, 5.0)
+        assert found.complete
+        assert len(found) == len(wavelength) > 0
+        np.testing.assert_allclose([peak.wavelength_nm for peak in found], wavelength, rtol=0.0, atol=1.01 * step)
+        np.testing.assert_allclose([peak.transmittance for peak in found], transmittance, rtol=1e-5)
+
+
+def test_where_light_begins_to_leave_the_search_says_so():
+    # Dispersion carries the exit face through the critical angle inside the band: T begins with a square root there.
+    prism = fs.sellmeier([1.25], [0.01], 1.0)
+    angle = float(np.degrees(np.arcsin(1.0 / prism.index(550.0).real)))
+    stack = fs.Stack(prism, [fs.Layer(C(2.3), 1000.0)], C(1.0))
+    found = fs.transmission_peaks(stack, (500.0, 600.0), angle)
+    assert not found.complete
+    assert any(
+        note.startswith("not resolved from 550") or note.startswith("not resolved from 549.99") for note in found.notes
+    )
+    wavelength, _, step = grid_maxima(stack, (551.0, 600.0), angle, "s", 5.0)
+    np.testing.assert_allclose([peak.wavelength_nm for peak in found], wavelength, rtol=0.0, atol=1.01 * step)
+
+
+def test_table_and_sequence_of_a_result():
+    found = fs.transmission_peaks(fs.Stack(C(1.0), [fs.Layer(C(4.0), 1000.0)], C(1.0)), (510.0, 690.0))
+    frame = found.to_frame()
+    assert len(found) == len(frame) == 4
+    assert frame["wavelength_nm"].tolist() == [peak.wavelength_nm for peak in found]
+    assert found[-1] is found.peaks[-1]
+    axes = found.plot()
+    assert axes.get_ylabel() == "T (%)"

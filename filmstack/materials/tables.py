@@ -70,6 +70,8 @@ class Table(Material):
         allow_gain: bool = False,
     ) -> None:
         super().__init__(provenance, allow_gain=allow_gain)
+        self.reading_report = ""
+        """How a person's own file was understood, in words; also the first note of its provenance."""
         self.wavelength_nm, self.n, self.k, self.tolerance = wavelength_nm, n, k, tolerance
         self.energy_ev = PLANCK_EV_NM / wavelength_nm[::-1]
         patience = 20 if len(n) <= 500 else 1
@@ -149,19 +151,48 @@ _MAKING = ("thinned ", "linear interpolation ", "formula sampled ", "source cove
 
 def table_provenance(head: Mapping[str, str]) -> Provenance:
     """Return where the numbers of a shipped table come from."""
-    low, _, high = head["range_nm"].partition(" to ")
+    ends = np.array(head["range_nm"].split(" to "), dtype=float)
+    low, high = in_vacuum(head, ends)[0].tolist()
     notes = [note for note in head["notes"].split("; ") if note]
     making = [note for note in notes if note.startswith(_MAKING) or note.endswith("dropped")]
+    medium = [f"index {head['index_of']}"] if "index_of" in head else []
     return Provenance(
         key=head["key"],
         label=head["label"],
         source=head["source"],
         form=head["form"],
-        range_nm=(float(low), float(high)),
+        range_nm=(low, high),
         temperature=head["temperature"],
-        status="; ".join([head["status"], *making]),
+        status="; ".join([head["status"], *medium, *making]),
         notes=tuple(note for note in notes if note not in making),
     )
+
+
+def in_vacuum(head: Mapping[str, str], wavelength_nm: FloatArray) -> tuple[FloatArray, FloatArray | float]:
+    """Return vacuum wavelengths of a table's rows, and the index of the air in which they were measured.
+
+    Parameters
+    ----------
+    head : mapping
+        Header of the table; where its `index_of` is "relative to air", its wavelengths are those in air.
+    wavelength_nm : ndarray of float
+        Wavelengths as printed. [nm]
+
+    Returns
+    -------
+    wavelength_nm : ndarray of float
+        Vacuum wavelengths. [nm]
+    air : ndarray of float or 1.0
+        What the printed n and k are to be multiplied by. [1]
+    """
+    if head.get("index_of") != "relative to air":
+        return wavelength_nm, 1.0
+    from filmstack.materials.models.formula import standard_air
+
+    air: FloatArray = np.ones(len(wavelength_nm))
+    for _ in range(3):  # the index of air changes by 1e-9 between its own and the vacuum wavelength
+        air = np.asarray(standard_air(PLANCK_EV_NM / (wavelength_nm * air)), dtype=float)
+    return wavelength_nm * air, air
 
 
 def shipped_table(key: str, *, fitted: bool = True) -> Table:
@@ -182,14 +213,16 @@ def shipped_table(key: str, *, fitted: bool = True) -> Table:
     text = path.read_text(encoding="utf-8")
     lines = [line for line in text.splitlines() if line and not line.startswith("#")][1:]
     cells = [line.split(",") for line in lines]
-    wavelength, n, k = np.array(cells, dtype=float).T
+    head = read_header(path)
+    printed, n, k = np.array(cells, dtype=float).T
+    wavelength, air = in_vacuum(head, printed)
+    n, k = n * air, k * air
     tolerance = printed_tolerance([row[1] for row in cells])
     curve = _fitted_curve(path.stem, text, wavelength, n) if fitted else None
     deviation = None if curve is None else partial(_fitted_deviation, path.stem)
     if not fitted:
         curve = fit_curve(PLANCK_EV_NM / wavelength[::-1], n[::-1], tolerance[::-1])
-    provenance = table_provenance(read_header(path))
-    return Table(provenance, wavelength, n, k, tolerance, n_curve=curve, deviation=deviation)
+    return Table(table_provenance(head), wavelength, n, k, tolerance, n_curve=curve, deviation=deviation)
 
 
 def printed_tolerance(cells: list[str]) -> FloatArray:

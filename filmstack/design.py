@@ -360,6 +360,7 @@ def _relative(path: Path, folder: Path) -> str:
 
 def _name_of(material: Material, written: Written) -> Any:  # noqa: ANN401 - a text or table
     """Return what a file would say for a material: its name there, a constant index, a key of the library."""
+    from filmstack.materials.library import TABLE_FILES
     from filmstack.materials.library import material as find
 
     if material in written.names:
@@ -367,7 +368,7 @@ def _name_of(material: Material, written: Written) -> Any:  # noqa: ANN401 - a t
     if isinstance(material, Constant) and not material.allow_gain and material.key.startswith("constant "):
         return {"n": material.n, "k": material.k} if material.k else {"n": material.n}
     with suppress(FilmstackError):
-        if find(material.key) is material and not material.key.lower().endswith(".csv"):
+        if find(material.key) is material and not material.key.lower().endswith(TABLE_FILES):
             return material.key
     raise ArgumentError(
         f"design: {material.label}: expected a material of the library, of the design's own file, or of constant "

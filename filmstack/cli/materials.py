@@ -17,6 +17,7 @@ from filmstack.errors import FilmstackError
 if TYPE_CHECKING:
     from filmstack.materials.library import MaterialRecord
     from filmstack.materials.material import Material
+    from filmstack.materials.tables import Table
 
 HELP = (
     "List the materials of the library, by words of their names and sources; print n and k of some of them (--at), "
@@ -105,7 +106,7 @@ def _refuse_clashes(options: Options) -> None:
         raise FilmstackError("--covers", "filters the list or limits a plot: not with --at alone", "Leave it out")
 
 
-def _read_own(path: str) -> Material:
+def _read_own(path: str) -> Table:
     from filmstack.materials.reader import read_material
 
     if not Path(path).is_file():

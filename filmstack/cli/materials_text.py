@@ -12,6 +12,7 @@ from filmstack.cli.output import format_table, material_records
 if TYPE_CHECKING:
     from filmstack.materials.library import MaterialRecord
     from filmstack.materials.material import Material
+    from filmstack.materials.tables import Table
 
 Row = tuple[float, float, float]
 """Wavelength [nm], n and k [1]."""
@@ -109,14 +110,14 @@ def list_record(record: MaterialRecord) -> dict[str, Any]:
     }
 
 
-def check_page(material: Material) -> list[str]:
+def check_page(material: Table) -> list[str]:
     """Return how a person's file was understood."""
     rows = _check_rows(material)
     cells = [(f"{w:g}", f"{n:.5f}", f"{k:.4g}") for w, n, k in rows]
     supports = material.derivative_order
     return [
         f"{material.key}: can be used as a material",
-        *(line for note in material.provenance.notes for line in textwrap.wrap(note, _WIDTH, initial_indent="  ")),
+        *textwrap.wrap(material.reading_report, _WIDTH, initial_indent="  ", subsequent_indent="  "),
         f"  n from {min(r[1] for r in rows):g} to {max(r[1] for r in rows):g}, "
         f"k from {min(r[2] for r in rows):g} to {max(r[2] for r in rows):g}; "
         f"{supports} continuous derivative{'s' if supports != 1 else ''} of n",
@@ -125,11 +126,14 @@ def check_page(material: Material) -> list[str]:
     ]
 
 
-def check_record(material: Material) -> dict[str, Any]:
+def check_record(material: Table) -> dict[str, Any]:
     """Return the same for JSON."""
-    return {**value_record(material, _check_rows(material)), "derivative_order": material.derivative_order}
+    return {
+        **value_record(material, _check_rows(material)),
+        "reading_report": material.reading_report,
+        "derivative_order": material.derivative_order,
+    }
 
 
-def _check_rows(material: Material) -> list[Row]:
-    rows: Any = material
-    return [(float(w), float(n), float(k)) for w, n, k in zip(rows.wavelength_nm, rows.n, rows.k, strict=True)]
+def _check_rows(table: Table) -> list[Row]:
+    return [(float(w), float(n), float(k)) for w, n, k in zip(table.wavelength_nm, table.n, table.k, strict=True)]

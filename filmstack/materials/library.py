@@ -1,6 +1,6 @@
 """The library of materials: a name -> here -> a `Material`.
 
-A name is a plain name ("SiO2"), a key ("SiO2/ion-assisted-2013"), a path to a CSV, or the name of a
+A name is a plain name ("SiO2"), a key ("SiO2/ion-assisted-2013"), a path to a table (CSV), or the name of a
 CSV beside the design. A user's own file wins over the library. A new default is one line of `DEFAULTS`;
 a new table is one CSV in the shipped folder, with its header.
 """
@@ -107,6 +107,9 @@ DEFAULTS: Mapping[str, str] = {
     "steel": "steel/austenitic-1982",
 }
 """Key that a plain name stands for."""
+
+TABLE_FILES = (".csv", ".txt", ".tsv", ".dat", ".xls", ".xlsx", ".ods")
+"""What the path of a table ends in; the reader tells that a spreadsheet has to be saved as CSV first."""
 
 UNITY = {"air": "air", "vacuum": "vacuum"}
 """Media of index 1."""
@@ -227,7 +230,7 @@ def own_file(word: str, folder: str | os.PathLike[str] | None) -> Path | None:
     -------
     Path or None
     """
-    if word.lower().endswith(".csv"):
+    if word.lower().endswith(TABLE_FILES):
         given = Path(word).expanduser()
         places = [given] if folder is None else [Path(folder) / given, Path(folder) / "materials" / given, given]
         for place in places:
@@ -287,7 +290,7 @@ def _unity_provenance(name: str) -> Provenance:
 def _not_found(word: str, folder: str | os.PathLike[str] | None) -> MaterialNotFoundError:
     from filmstack.files.hints import nearest
 
-    if word.lower().endswith(".csv"):
+    if word.lower().endswith(TABLE_FILES):
         place = f" in {folder} or its folder materials" if folder is not None else ""
         return MaterialNotFoundError(f"material {word!r}", f"no such file{place}", "Correct the path")
     lowered = {name.lower(): name for name in (*UNITY, *DEFAULTS, *(record.key for record in list_materials()))}

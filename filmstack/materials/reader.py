@@ -23,7 +23,9 @@ if TYPE_CHECKING:
     from filmstack.arraytypes import FloatArray
 
 _COMMENTS = ("#", "%", "//", "!")
-_SEPARATORS = {";": "semicolons", "\t": "tabs", ",": "commas"}
+_SEPARATORS = {";": "semicolons", "\t": "tabs", "|": "bars", ",": "commas"}
+_COMMAS = "Commas can not both separate and mark decimals: separate the columns by semicolons"
+_MOST_FAULTS = 10
 _DESCRIPTION = ("key", "label", "source", "form", "temperature", "status")
 
 
@@ -36,6 +38,8 @@ class Text:
     header_line: int
     cells: list[list[str]]
     lines: list[int]
+    separator: str | None
+    """None: blanks."""
     comma: bool
     """The decimal sign is a comma."""
     described: dict[str, str]
@@ -69,15 +73,20 @@ def read_material(path: Path, allow_gain: bool = False) -> Table:
     columns = find_columns(text.path, text.header, text.header_line, faults)
     _refuse(faults)
     assert columns is not None
-    rows = checked_rows(path, _numbers(text, columns, faults), text.lines, columns, allow_gain, faults)
+    values = _numbers(text, columns, faults)
+    _judge_commas(text, columns, values, faults)
+    rows = checked_rows(path, values, text.lines, columns, allow_gain, faults)
     _refuse(faults)
     assert rows is not None
     return _table(text, columns, rows, allow_gain)
 
 
 def _refuse(faults: list[FilmstackError]) -> None:
+    if len(faults) > _MOST_FAULTS:
+        more = len(faults) - _MOST_FAULTS
+        faults = [*faults[:_MOST_FAULTS], MaterialFileError(f"{more} more fault{'s' if more > 1 else ''} in the file")]
     if faults:
-        raise all_faults(faults[:10])
+        raise all_faults(faults)
 
 
 def split_text(path: Path) -> Text:
@@ -115,7 +124,8 @@ def split_text(path: Path) -> Text:
     names = _split(header, separator)
     while len(names) > 1 and not names[-1]:
         names.pop()  # a separator at the end of the line
-    return Text(path, names, header_line, cells, [number for number, _ in body], comma, described, notes)
+    lines = [number for number, _ in body]
+    return Text(path, names, header_line, cells, lines, separator, comma, described, notes)
 
 
 def _names_separator(line: str) -> bool:
@@ -131,7 +141,12 @@ def _split(line: str, separator: str | None) -> list[str]:
 
 
 def _decode(path: Path) -> tuple[str, list[str]]:
-    raw = path.read_bytes()
+    try:
+        raw = path.read_bytes()
+    except OSError as error:
+        raise MaterialFileError(
+            str(path), f"the file can not be read ({error.strerror})", "Correct the path or its rights"
+        ) from None
     for mark, encoding, name in (
         (b"\xef\xbb\xbf", "utf-8-sig", "byte-order mark"),
         (b"\xff\xfe", "utf-16", "UTF-16"),
@@ -202,14 +217,31 @@ def _numbers(text: Text, columns: Columns, faults: list[FilmstackError]) -> Floa
 
 
 def _ragged(text: Text, line: list[str], number: int) -> MaterialFileError:
-    advice = "Correct the row"
-    if len(line) == 2 * len(text.header):
-        advice = "Commas can not both separate and mark decimals: separate the columns by semicolons"
+    extra = len(line) - len(text.header)
+    doubled = text.separator == "," and extra > 0 and all(cell.isdigit() for cell in line)
+    advice = _COMMAS if doubled else "Correct the row"
     return MaterialFileError(
         f"{text.path}: line {number}",
         f"expected {len(text.header)} cells as in the header, found {len(line)}",
         advice,
     )
+
+
+def _judge_commas(text: Text, columns: Columns, values: FloatArray, faults: list[FilmstackError]) -> None:
+    """Refuse n = 1.46 written as `1,46` between commas, where the column k would take the 46."""
+    if faults or text.separator != "," or columns.permittivity or len(columns.used) < 3 or not values.size:
+        return
+    digits = all(line[place].isdigit() for line in text.cells for place in columns.used[1:])
+    if digits and values[1].max() < 10.0 <= values[2].max():
+        line = text.cells[0]
+        faults.append(
+            MaterialFileError(
+                f"{text.path}: line {text.lines[0]}",
+                f"expected n and k, found {line[columns.used[1]]} and {line[columns.used[2]]}, "
+                "which look like one number with a decimal comma",
+                _COMMAS,
+            )
+        )
 
 
 def _mixed(text: Text, columns: Columns) -> MaterialFileError:
@@ -244,6 +276,7 @@ def _table(text: Text, columns: Columns, rows: Rows, allow_gain: bool) -> Table:
     if moved > 1e-5:
         told = f"{told}, n drawn smoothly, at most {moved:.1g} from the rows"
         table.provenance = replace(provenance, notes=(told,))
+    table.reading_report = told
     return table
 
 

@@ -30,21 +30,26 @@ class Spectral:
     high: float
     """Numbers all above this are of another unit."""
     below: str
-    """Header that numbers all below `low` belong to."""
+    """Header that numbers all below `low` could belong to; empty if none."""
     above: str
-    """Header that numbers all above `high` belong to."""
+    """Header that numbers all above `high` could belong to; empty if none."""
 
 
 SPECTRAL = {
-    "wavelength_nm": Spectral("nm", lambda x: x, 10.0, 1e7, "wavelength_um", "wavenumber_per_cm"),
-    "wavelength_um": Spectral("um", lambda x: 1000.0 * x, 0.005, 120.0, "wavelength_mm", "wavelength_nm"),
-    "energy_ev": Spectral("eV", lambda x: PLANCK_EV_NM / x, 1e-4, 130.0, "energy in another unit", "wavelength_nm"),
-    "wavenumber_per_cm": Spectral(
-        "cm^-1", lambda x: 1e7 / x, 10.0, 1e6, "energy_ev or wavelength_um", "wavenumber_per_m"
-    ),
+    "wavelength_nm": Spectral("nm", lambda x: x, 10.0, 1e7, "wavelength_um", ""),
+    "wavelength_um": Spectral("um", lambda x: 1000.0 * x, 0.005, 120.0, "", "wavelength_nm"),
+    "energy_ev": Spectral("eV", lambda x: PLANCK_EV_NM / x, 1e-4, 130.0, "", "wavelength_nm"),
+    "wavenumber_per_cm": Spectral("cm^-1", lambda x: 1e7 / x, 10.0, 1e6, "energy_ev or wavelength_um", ""),
 }
 """Header of the spectral column, in nm or converted to it."""
 
+_MEANT = {
+    "lambda_nm": "wavelength_nm", "wl_nm": "wavelength_nm", "lambda_um": "wavelength_um", "wl_um": "wavelength_um",
+    "ev": "energy_ev", "cm_1": "wavenumber_per_cm", "wavenumber_cm": "wavenumber_per_cm",
+    "refractive_index": "n", "index": "n", "re_n": "n", "extinction_coefficient": "k", "extinction": "k", "im_n": "k",
+    "eps1": "eps_real", "eps_1": "eps_real", "eps2": "eps_imag", "eps_2": "eps_imag",
+}  # fmt: skip
+"""Other headers in use: named in the advice, not read in silence."""
 _CONSTANTS = ("n", "k", "eps_real", "eps_imag")
 _SPELLINGS = {
     "wavelength": "", "lambda": "", "wl": "", "energy": "", "wavenumber": "",
@@ -107,9 +112,21 @@ def _judge_names(where: str, header: list[str], names: list[str], faults: list[F
     def fault(problem: str, advice: str) -> None:
         faults.append(MaterialFileError(where, problem, advice))
 
+    if not any(name in known or name in _SPELLINGS or name in _MEANT for name in names) and not any(
+        nearest(name, known, "") for name in names
+    ):
+        fault(
+            f"expected a header such as wavelength_nm,n,k, found {' '.join(header)!r}",
+            "Name the columns in the first line; lines of comment begin with #",
+        )
+        return
     for place, (cell, name) in enumerate(zip(header, names, strict=True)):
         if name in _SPELLINGS:
             fault(f"expected a column with its unit, found {cell!r}", f"Name it {nearest_unit(name)}")
+        elif not name:
+            fault(f"column {place + 1} has no name", "Name it or delete it")
+        elif name in _MEANT:
+            fault(f"unknown column {cell!r}", f"Name it {_MEANT[name]}")
         elif name not in known:
             advice = nearest(name, known, f"The columns are {', '.join(known)}")
             fault(f"unknown column {cell!r}", advice)

@@ -16,6 +16,15 @@ if TYPE_CHECKING:
     from filmstack.arraytypes import BoolArray, FloatArray, IntArray
 
 
+_WIDEST_GAP = 100.0
+"""Ratio of neighbours on the spectral axis from which they are of two units."""
+_SOFT_X_RAYS = 25.0
+"""Below this wavelength n of every medium is within a few per cent of 1, or less. [nm]"""
+_NEAR_INFRARED = 3000.0
+"""Below this wavelength no medium has an n or k above the next two: aluminium reaches k = 28 there. [nm]"""
+_LARGEST_N, _LARGEST_K = 10.0, 60.0
+
+
 @dataclass(frozen=True)
 class Rows:
     """Checked rows, wavelength increasing."""
@@ -59,6 +68,8 @@ def checked_rows(
     wavelength = np.asarray(SPECTRAL[columns.spectral].to_nm(axis))
     if not faults:
         _judge_kind(path, wavelength, n, k, values, columns, faults)
+    if not faults:
+        _judge_size(path, wavelength, n, k, axis, lines, columns, faults)
     order = np.argsort(wavelength, kind="stable")
     repeated = _repeated(path, axis, values, order, lines, columns, faults)
     if faults:
@@ -89,15 +100,35 @@ def _judge_axis(
     ]
     if faults:
         return
+    _judge_gaps(path, axis, lines, columns, faults)
     if axis.max() < kind.low or axis.min() > kind.high:
         meant = kind.below if axis.max() < kind.low else kind.above
         faults.append(
             MaterialFileError(
                 f"{path}: line {lines[0]}: {columns.spectral}",
                 f"expected numbers in {kind.unit}, found {axis.min():g} to {axis.max():g}",
-                f"If they are of another unit, name the column {meant}",
+                f"If they are of another unit, name the column {meant}" if meant else f"Write them in {kind.unit}",
             )
         )
+
+
+def _judge_gaps(
+    path: Path, axis: FloatArray, lines: Sequence[int], columns: Columns, faults: list[FilmstackError]
+) -> None:
+    """Refuse rows of two units: 0.5 beside 400. Two rows alone may span what they like."""
+    order = np.argsort(axis, kind="stable")
+    rising = axis[order]
+    gap = int(np.argmax(rising[1:] / rising[:-1]))
+    if len(axis) < 3 or rising[gap + 1] < _WIDEST_GAP * rising[gap]:
+        return
+    odd, other = (gap, gap + 1) if gap + 1 <= len(axis) // 2 else (gap + 1, gap)
+    faults.append(
+        MaterialFileError(
+            f"{path}: line {lines[order[odd]]}: {columns.spectral}",
+            f"expected numbers of one unit, found {rising[odd]:g} beside {rising[other]:g}",
+            "Correct the cell, or write all rows in one unit",
+        )
+    )
 
 
 def _constants(values: FloatArray, columns: Columns) -> tuple[FloatArray, FloatArray]:
@@ -167,6 +198,41 @@ def _judge_kind(
                 "Give n and k; if these are a medium's, give them as eps_real and eps_imag",
             )
         )
+
+
+def _judge_size(
+    path: Path,
+    wavelength_nm: FloatArray,
+    n: FloatArray,
+    k: FloatArray,
+    axis: FloatArray,
+    lines: Sequence[int],
+    columns: Columns,
+    faults: list[FilmstackError],
+) -> None:
+    """Refuse constants that no medium has at their wavelength: a slip of the decimal sign, or of the unit."""
+    soft = np.flatnonzero((wavelength_nm < _SOFT_X_RAYS) & (n > 1.2))
+    if soft.size:
+        row = int(soft[0])
+        meant = " wavelength_um" if columns.spectral == "wavelength_nm" else " after it"
+        faults.append(
+            MaterialFileError(
+                f"{path}: line {lines[row]}: n",
+                f"expected n near 1 below {_SOFT_X_RAYS:g} nm, found {n[row]:g} at "
+                f"{axis[row]:g} {SPECTRAL[columns.spectral].unit}",
+                f"If the column {columns.spectral} is of another unit, name it{meant}",
+            )
+        )
+        return
+    for name, found, most in (("n", n, _LARGEST_N), ("k", k, _LARGEST_K)):
+        faults += [
+            MaterialFileError(
+                f"{path}: line {lines[row]}: {name}",
+                f"expected {name} below {most:g} at wavelengths below {_NEAR_INFRARED:g} nm, found {found[row]:g}",
+                "Correct the cell; give no percent of reflectance or transmittance",
+            )
+            for row in np.flatnonzero((wavelength_nm < _NEAR_INFRARED) & (np.abs(found) > most)).tolist()
+        ]
 
 
 def _repeated(

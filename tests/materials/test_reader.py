@@ -52,6 +52,7 @@ DIALECTS = {
         ", separated by tabs, decimal comma",
     ),
     "blanks": (b"wavelength_nm  n  k\n400  2.41  0.002\n500 2.35 0.001\n 800 2.29 0.0005\n", ", separated by blanks"),
+    "bars": (b"wavelength_nm|n|k\n400|2.41|0.002\n500|2.35|0.001\n800|2.29|0.0005\n", ", separated by bars"),
     "byte_order_mark": (
         b"\xef\xbb\xbfwavelength_nm,n,k\n400,2.41,0.002\n500,2.35,0.001\n800,2.29,0.0005\n",
         ", byte-order mark",
@@ -118,6 +119,7 @@ def test_dialects_are_read_and_every_assumption_is_told(tmp_path, dialect):
     rows = 4 if dialect == "repeated_row" else 3
     note = f"read {rows} rows, 400 to 800 nm{told}"
     assert table.provenance.notes == (note,)
+    assert table.reading_report == note
     assert "film.csv" in table.label
     assert str(tmp_path / "film.csv") in table.provenance.source
 
@@ -154,7 +156,15 @@ def test_the_smoothing_is_told(tmp_path):
     table = fs.material(tmp_path / "film.csv")
     moved = np.abs(table.index(wavelength).real - table.n)
     assert 1e-5 < moved.max() <= 0.0005
-    assert table.provenance.notes[0].endswith(f"n drawn smoothly, at most {moved.max():.1g} from the rows")
+    assert table.provenance.notes == (table.reading_report,)
+    assert table.reading_report.endswith(f"n drawn smoothly, at most {moved.max():.1g} from the rows")
+
+
+@pytest.mark.parametrize("ending", [".txt", ".dat", ".tsv", ".CSV"])
+def test_other_endings_of_text_files_are_read(tmp_path, ending):
+    path = tmp_path / f"film{ending}"
+    path.write_bytes(b"wavelength_nm\tn\n400\t2.4\n800\t2.3\n")
+    assert fs.material(path).index(800.0) == 2.3
 
 
 HEAD = b"wavelength_nm,n,k\n"
@@ -164,12 +174,15 @@ REFLECTANCE = (
     "which look like reflectance or transmittance in {}. "
     "Give n and k; if these are a medium's, give them as eps_real and eps_imag"
 )
+COMMAS = "Commas can not both separate and mark decimals: separate the columns by semicolons"
+SIZE = "Correct the cell; give no percent of reflectance or transmittance"
 BAD = {
     "empty": (b"", "{f}: expected a header such as wavelength_nm,n,k and rows below it, found no line of data. Fill in the table"),
     "comments_only": (b"# to do\n\n", "{f}: expected a header such as wavelength_nm,n,k and rows below it, found no line of data. Fill in the table"),
     "header_only": (HEAD, "{f}: expected at least two rows below the header, found none. For an index without dispersion write it twice, at the ends of its range"),
     "one_row": (HEAD + b"550,1.46,0\n", "{f}: expected at least two rows below the header, found one row. For an index without dispersion write it twice, at the ends of its range"),
     "no_header": (b"400,2.41,0\n500,2.35,0\n", "{f}: line 1: expected a header such as wavelength_nm,n,k, found numbers (400, 2.41, 0). Write a first line that names the columns and their unit"),
+    "spreadsheet": (b"PK\x03\x04\x14\0\x06\0", "{f}: expected a text file, found bytes that are no text. Save the table as CSV (UTF-8)"),
     "picture": (b"\x89PNG\r\n\x1a\n\0\0\0\rIHDR", "{f}: expected a text file, found bytes that are no text. Save the table as CSV (UTF-8)"),
     "half_utf_16": (b"\xff\xfew\0a\0v", "{f}: expected a text file, found bytes that are no text. Save the table as CSV (UTF-8)"),
     "misspelt_column": (b"wavelenght_nm,n,k\n400,2.4,0\n500,2.3,0\n", "{f}: line 1: unknown column 'wavelenght_nm'. Did you mean wavelength_nm?"),
@@ -198,6 +211,18 @@ BAD = {
     "nm_as_micrometres": (b"wavelength_um,n\n400,2.41\n1100,2.35\n", "{f}: line 2: wavelength_um: expected numbers in um, found 400 to 1100. If they are of another unit, name the column wavelength_nm"),
     "nm_as_energy": (b"energy_ev,n\n400,2.41\n1100,2.35\n", "{f}: line 2: energy_ev: expected numbers in eV, found 400 to 1100. If they are of another unit, name the column wavelength_nm"),
     "energy_as_wavenumber": (b"wavenumber_per_cm,n\n1.1,2.41\n3.1,2.35\n", "{f}: line 2: wavenumber_per_cm: expected numbers in cm^-1, found 1.1 to 3.1. If they are of another unit, name the column energy_ev or wavelength_um"),
+    "metres_as_micrometres": (b"wavelength_um,n\n4e-7,2.41\n11e-7,2.35\n", "{f}: line 2: wavelength_um: expected numbers in um, found 4e-07 to 1.1e-06. Write them in um"),
+    "infrared_micrometres_as_nm": (HEAD + b"2.5,4.02,0\n14,4.00,0.0001\n", "{f}: line 2: n: expected n near 1 below 25 nm, found 4.02 at 2.5 nm. If the column wavelength_nm is of another unit, name it wavelength_um"),
+    "two_units": (HEAD + b"400,2.41,0\n0.5,2.35,0\n600,2.3,0\n700,2.3,0\n", "{f}: line 3: wavelength_nm: expected numbers of one unit, found 0.5 beside 400. Correct the cell, or write all rows in one unit"),
+    "decimal_sign_lost": (HEAD + b"400,2.41,0\n500,235,0\n600,2.3,0\n", "{f}: line 3: n: expected n below 10 at wavelengths below 3000 nm, found 235. " + SIZE),
+    "percent_with_absorptance": (HEAD + b"400,30.5,20.1\n500,31.5,22.1\n", "{f}: line 2: n: expected n below 10 at wavelengths below 3000 nm, found 30.5. " + SIZE + "\n{f}: line 3: n: expected n below 10 at wavelengths below 3000 nm, found 31.5. " + SIZE),
+    "k_too_large": (HEAD + b"400,1.5,0\n500,1.5,100\n", "{f}: line 3: k: expected k below 60 at wavelengths below 3000 nm, found 100. " + SIZE),
+    "decimal_comma_taken_for_k": (HEAD + b"400,1,46\n500,1,45\n", "{f}: line 2: expected n and k, found 1 and 46, which look like one number with a decimal comma. " + COMMAS),
+    "decimal_comma_without_k": (b"wavelength_nm,n\n400,1,46\n500,1,45\n", "{f}: line 2: expected 2 cells as in the header, found 3. " + COMMAS + "\n{f}: line 3: expected 2 cells as in the header, found 3. " + COMMAS),
+    "title_line": (b"Our film, evaporated\n" + HEAD + b"400,2.41,0\n500,2.35,0\n", "{f}: line 1: expected a header such as wavelength_nm,n,k, found 'Our film evaporated'. Name the columns in the first line; lines of comment begin with #"),
+    "column_of_row_numbers": (b",wavelength_nm,n\n0,400,2.41\n1,500,2.35\n", "{f}: line 1: column 1 has no name. Name it or delete it"),
+    "other_words": (b"lambda (nm),Refractive index,eps2\n400,2.41,0\n500,2.35,0\n", "{f}: line 1: unknown column 'lambda (nm)'. Name it wavelength_nm\n{f}: line 1: unknown column 'Refractive index'. Name it n\n{f}: line 1: unknown column 'eps2'. Name it eps_imag"),
+    "many_faults": (HEAD + b"400,x,0\n" * 12, "\n".join(f"{{f}}: line {line}: n: expected a number, found 'x'. Correct the cell or delete the row" for line in range(2, 12)) + "\n2 more faults in the file"),
     "negative_n": (HEAD + b"400,-2.41,0\n500,2.35,0\n", "{f}: line 2: n: expected a number >= 0, found -2.41. Correct the cell"),
     "one_negative_k": (HEAD + b"400,2.41,0.001\n500,2.35,-0.0002\n", "{f}: line 3: k: expected a number >= 0, found -0.0002. Absorption is positive; a medium with gain needs allow_gain=True"),
     "all_k_negative": (HEAD + b"400,2.41,-0.001\n500,2.35,-0.0002\n", "{f}: line 2: k: expected a number >= 0, found -0.001. Every k is negative: write absorption as a positive number"),

@@ -45,6 +45,8 @@ STALLED, LARGEST_NOISE = 1.7, 1e-6
 """An error that one halving lowers by less than this many powers of two is rounding, if it is below that noise."""
 BLIND, MOST_ROUNDS = 1e-6, 6
 """Noise over |D| above which a piece is not judged before D is modelled closer to it, and how often that is done."""
+LEAST_CHANGE = 1e-12
+"""Change of ln T over a piece below which T is constant there, if its sign is not known."""
 MOST_PIECES = 50_000
 """Pieces in hand at which the search gives up, and says so."""
 EPSILON = float(np.finfo(float).eps)
@@ -327,7 +329,8 @@ def _judged(
         steep = np.max(change / np.sqrt(power), axis=1)
         lift = 1.0 / least + largest[:, np.newaxis] / np.maximum(f, 1e-200 * largest[:, np.newaxis])
         # A polynomial known to the noise has a derivative known to TERMS^2 times that (Markov).
-        doubt = np.abs(t) * noise[:, np.newaxis] * lift * (TERMS**2 * share[:, np.newaxis] + steep)
+        doubt = noise[:, np.newaxis] * lift * (TERMS**2 * share[:, np.newaxis] + steep)
+        doubt = np.abs(t) * (doubt + 64.0 * EPSILON / least)  # the second term: rounding in cutting the pieces
         return _Slope(g, t, doubt, noise[:, np.newaxis] / least)
 
 
@@ -351,7 +354,7 @@ def _pieces(models: Models) -> _Piece:
         blind = inside.dim.max(axis=1) > BLIND
         sure = ~blind & (np.abs(c[:, 0]) - np.abs(c[:, 1:]).sum(axis=1) > inside.doubt.max(axis=1))
         size = np.abs(inside.g)
-        flat = ~sure & ~blind & np.all((size <= inside.doubt) | (2.0 * size <= 1e-14 * np.abs(inside.t)), axis=1)
+        flat = ~sure & ~blind & np.all((size <= inside.doubt) | (2.0 * size <= LEAST_CHANGE * np.abs(inside.t)), axis=1)
         bent = np.abs(dc[:, 0]) > np.abs(dc[:, 1:]).sum(axis=1)
         sign = np.where(np.abs(ends.g) > ends.doubt, np.sign(ends.g), 0.0).astype(int)
         one = ~sure & ~flat & ~blind & bent & (sign != 0).any(axis=1)
@@ -371,7 +374,7 @@ def _pieces(models: Models) -> _Piece:
         cut = first[go] + 0.5 * (CUT + 1.0) * (last - first)[go]
         first, last = np.concatenate([first[go], cut]), np.concatenate([cut, last[go]])
         interval = np.tile(interval[go], 2)
-        d, flux = (np.concatenate([x[go] @ half for half in halves]) for x in (d, flux))
+        d, flux = (_without_tail(np.concatenate([x[go] @ half for half in halves]), 8.0 * EPSILON) for x in (d, flux))
     order = np.lexsort((np.concatenate([x.first for x in done]), np.concatenate([x.interval for x in done])))
     names = _Piece.__dataclass_fields__
     return _Piece(*(np.concatenate([getattr(piece, name) for piece in done])[order] for name in names))

@@ -288,3 +288,21 @@ def test_table_and_sequence_of_a_result():
     assert found[-1] is found.peaks[-1]
     axes = found.plot()
     assert axes.get_ylabel() == "T (%)"
+
+
+@pytest.mark.parametrize(
+    ("index", "peaks"), [(1.5, 1), (1.51997, 1), (1.519975, 1), (1.5200023313, None), (1.521, 2), (1.7, 2)]
+)
+def test_two_cavities_about_to_merge(index, peaks):
+    # One layer between them carries the two lines through the index of 1.51997, where they become one with a flat top;
+    # next to it the dip between them falls below the rounding of T, and one or two is as good an answer.
+    h, w, space = quarter(HIGH, 1000.0), quarter(LOW, 1000.0), quarter(LOW, 1000.0, 2)
+    between = [*([h, w] * 10)[:9], quarter(C(index), 1000.0), *([h, w] * 10)[10:19]]
+    stack = fs.Stack(C(1.52), [*([h, w] * 5)[:-1], space, *between, space, *([h, w] * 5)[:-1]], C(1.52))
+    found = fs.transmission_peaks(stack, (990.0, 1010.0))
+    assert found.complete
+    assert found.resonances == 2
+    assert len(found) == peaks or (peaks is None and len(found) in (1, 2))
+    for peak in found:
+        t = fs.spectrum(stack, peak.wavelength_nm + np.array([-1e-2, 0.0, 1e-2])).T_s[0]
+        assert t[1] >= max(t[0], t[2]) * (1.0 - 1e-9)

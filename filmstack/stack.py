@@ -154,6 +154,16 @@ class Stack:
         """Return the stack as light from the other side meets it."""
         return Stack(self.exit, self.layers[::-1], self.incident)
 
+    def front(self) -> Stack:
+        """Return the films in front of the first thick plate, whose medium becomes the exit medium.
+
+        A stack without plates is returned as it is.
+        """
+        for place, layer in enumerate(self.layers):
+            if isinstance(layer, Plate):
+                return Stack(self.incident, self.layers[:place], layer.material)
+        return self
+
     @property
     def materials(self) -> tuple[Material, ...]:
         """Every distinct medium, the incident one first, in the order met."""

@@ -18,7 +18,7 @@ if TYPE_CHECKING:
     from filmstack.arraytypes import ComplexArray, FloatArray, IntArray
     from filmstack.stack import Stack
 
-STEPS_A_LAYER = 65
+STEPS_A_LAYER, MOST_HALVINGS = 65, 12
 
 
 @dataclass(frozen=True, eq=False)
@@ -118,18 +118,17 @@ def admittance_locus(
     if asked.angle_deg[0, 0] == 90.0:
         raise ArgumentError("angle_deg: expected an angle below 90 deg, got 90 deg")
     if stack.plates:
-        raise CoherenceError("admittance_locus: a stack with a thick plate has no admittance. Drop the plate")
+        raise CoherenceError("admittance_locus: a stack with a thick plate has no admittance. Take stack.front()")
     (group,) = asked.groups()
     solved = Solved(asked, group, polarization == "p")
     edges, films = solved.boundaries, len(stack.films)
-    depths, layers = [edges[-1:]], [np.array([films])]
+    depths, layers, values = [edges[-1:]], [np.array([films])], [_admittance(solved, films, edges[-1:])]
     for film in range(films - 1, -1, -1):
-        depths.append(np.linspace(edges[film + 1], edges[film], STEPS_A_LAYER))
-        layers.append(np.full(STEPS_A_LAYER, film))
-    depth, layer = np.concatenate(depths), np.concatenate(layers)
-    e, h = solved.at(layer, depth)
-    with np.errstate(divide="ignore", invalid="ignore"):
-        admittance = (h / e)[:, 0]
+        depth, admittance = _sampled(solved, film, edges[film + 1], edges[film])
+        depths.append(depth)
+        layers.append(np.full(depth.size, film))
+        values.append(admittance)
+    depth, layer, admittance = (np.concatenate(parts) for parts in (depths, layers, values))
     (a1, _), (a2, _) = group.ends.incident_pair(polarization == "p")
     return AdmittanceLocus(
         float(asked.wavelength_nm[0]),
@@ -141,3 +140,24 @@ def admittance_locus(
         float(a1[0, 0] / a2[0, 0]),
         asked.notes,
     )
+
+
+def _admittance(solved: Solved, film: int, depth: FloatArray) -> ComplexArray:
+    e, h = solved.at(np.full(depth.size, film), depth)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        return np.asarray((h / e)[:, 0])
+
+
+def _sampled(solved: Solved, film: int, start: float, stop: float) -> tuple[FloatArray, ComplexArray]:
+    """Return depths and admittances of one film, closer where the locus runs fast: no chord over 2 % of its size."""
+    depth = np.linspace(start, stop, STEPS_A_LAYER)
+    admittance = _admittance(solved, film, depth)
+    for _ in range(MOST_HALVINGS):
+        chord = np.abs(np.diff(admittance))
+        size = max(float(np.ptp(admittance.real)), float(np.ptp(admittance.imag)))
+        long = np.flatnonzero(chord > 0.02 * size)
+        if not long.size or not np.isfinite(size):
+            break
+        depth = np.insert(depth, long + 1, 0.5 * (depth[long] + depth[long + 1]))
+        admittance = _admittance(solved, film, depth)
+    return depth, admittance

@@ -96,8 +96,9 @@ class Field:
 
     def volt_per_metre(self, irradiance_w_per_cm2: float) -> FloatArray:
         """Return |E| at a given irradiance of the incident beam (across the beam, not along the surface). [V/m]"""
-        if not irradiance_w_per_cm2 >= 0.0:
-            raise ArgumentError(f"irradiance_w_per_cm2: expected a number >= 0 W/cm^2, got {irradiance_w_per_cm2:g}")
+        if not 0.0 <= irradiance_w_per_cm2 < float("inf"):
+            told = f"expected a finite number >= 0 W/cm^2, got {irradiance_w_per_cm2:g}"
+            raise ArgumentError(f"irradiance_w_per_cm2: {told}")
         # I = n |E|^2 / (2 Z0)
         square = 2.0 * FREE_SPACE_IMPEDANCE_OHM * irradiance_w_per_cm2 * 1e4 / self._solved.incident_index
         return np.asarray(np.sqrt(square * self.intensity))
@@ -178,7 +179,7 @@ def field(
         raise ArgumentError(f"polarization: expected 's' or 'p', got {polarization!r}")
     asked = request(stack, wavelength_nm, angle_deg)
     if stack.plates:
-        raise CoherenceError("field: a stack with a thick plate has no standing wave. Drop the plate")
+        raise CoherenceError("field: a stack with a thick plate has no standing wave. Take stack.front()")
     (group,) = asked.groups()
     if polarization == "p" and bool(np.any(blocking_films(group))):
         raise ArgumentError("field: a film of N = 0 blocks p at oblique incidence, where its field is not defined")

@@ -161,7 +161,7 @@ def phase(
         raise ArgumentError(f"plane: expected 'front' or 'substrate', got {plane!r}")
     asked = request(stack, wavelength_nm, angle_deg)
     if stack.plates:
-        raise CoherenceError("phase: a stack with a thick plate has no phase. Drop the plate")
+        raise CoherenceError("phase: a stack with a thick plate has no phase. Take stack.front()")
     if np.any(asked.angle_deg == 90.0):
         raise ArgumentError("angle_deg: expected angles below 90 deg, where t has a phase, got 90 deg")
     oblique = bool(np.any(asked.direction().b != 0.0))

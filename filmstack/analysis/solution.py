@@ -180,12 +180,14 @@ class Incoherent:
 
     def amplitude_reflectance(self, p: bool) -> ComplexArray:
         """Refuse: a plate has no phase."""
-        raise CoherenceError("r: a stack with a thick plate has no amplitude reflectance. Ask for R, or drop the plate")
+        raise CoherenceError(
+            "r: a stack with a thick plate has no amplitude reflectance. Ask for R, or take stack.front()"
+        )
 
     def amplitude_transmittance(self, p: bool) -> ComplexArray:
         """Refuse: a plate has no phase."""
         raise CoherenceError(
-            "t: a stack with a thick plate has no amplitude transmittance. Ask for T, or drop the plate"
+            "t: a stack with a thick plate has no amplitude transmittance. Ask for T, or take stack.front()"
         )
 
 

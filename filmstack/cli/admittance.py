@@ -14,6 +14,7 @@ from filmstack.errors import ArgumentError
 if TYPE_CHECKING:
     from filmstack.analysis.admittance import AdmittanceLocus
     from filmstack.design import Design
+    from filmstack.stack import Stack
 
 HELP = (
     "Admittance of a design while it grows, from the substrate outwards, at one wavelength: real against imaginary "
@@ -32,7 +33,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
         wavelength={
             "help": "one vacuum wavelength in nm, or um, eV, cm-1 by suffix (default: the reference wavelength)"
         },
-        angle={"help": "one angle of incidence in degrees (default: 0)"},
+        angle={"help": "one angle of incidence in degrees (default: the first of the design)"},
     )
     parser.add_argument(
         "--polarization",
@@ -47,24 +48,21 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
 def run(options: Options) -> int:
     """Read a design, compute its locus, write and print it; return the exit status."""
     from filmstack.analysis.admittance import admittance_locus
-    from filmstack.cli.output import json_text, write_csv, write_json
+    from filmstack.cli.output import deliver
 
     design = load_designs(options.designs)[0]
     stack = with_back_face(design.stack, "ideal", options.designs[0])
     wavelength = _one("--wavelength", options.wavelength, design.reference_wavelength_nm)
-    angle = _one("--angle", options.angle, 0.0)
+    angle = _one("--angle", options.angle, design.incident_angle_deg[0])
     locus = admittance_locus(stack, wavelength, angle, polarization=options.polarization)
     headings, rows = _table(locus)
     record = {"design": design.name, "wavelength_nm": wavelength, "angle_deg": angle,
               "polarization": locus.polarization, "incident_admittance": locus.incident, "notes": list(locus.notes),
               **{name: [row[j] for row in rows] for j, name in enumerate(headings)}}  # fmt: skip
-    if options.output and options.output.suffix.lower() == ".csv":
-        write_csv(options.output, headings, rows)
-    elif options.output:
-        write_json(options.output, record)
     if options.plot:
         _draw(design, stack, locus, options)
-    print(json_text(record) if options.json else "\n".join(_page(design, stack, locus)))
+    head, body = _page(design, stack, locus, options.designs[0])
+    deliver(options, (headings, rows), record, head, body)
     return 0
 
 
@@ -82,14 +80,13 @@ def _table(locus: AdmittanceLocus) -> tuple[list[str], list[list[float]]]:
     return ["grown_nm", "layer", "admittance_real", "admittance_imag"], rows
 
 
-def _page(design: Design, stack: Any, locus: AdmittanceLocus) -> list[str]:  # noqa: ANN401 - Stack, loaded late
+def _page(design: Design, stack: Stack, locus: AdmittanceLocus, path: str) -> tuple[list[str], list[str]]:
     from filmstack.cli.output import format_table
 
-    lines = [
-        design.name,
+    head = [
+        f"{design.name} ({path})",
         f"admittance in free-space units at {locus.wavelength_nm:g} nm, {locus.angle_deg:g} deg, "
         f"{locus.polarization} polarization; after each layer in the order of deposition",
-        "",
     ]
     rows = [["", "substrate " + stack.exit.label, "", *_parts(locus.admittance[0], locus.incident)]]
     for film in range(len(stack.films) - 1, -1, -1):
@@ -97,8 +94,8 @@ def _page(design: Design, stack: Any, locus: AdmittanceLocus) -> list[str]:  # n
         name = stack.films[film].material.label
         values = _parts(locus.admittance[last], locus.incident)
         rows.append([str(film + 1), name, f"{locus.grown_nm[last]:.2f}", *values])
-    lines += format_table(["layer", "material", "grown\nnm", "real\npart", "imaginary\npart", "R\n%"], rows, left=(1,))
-    return [*lines, *(f"note: {note}" for note in locus.notes)]
+    body = format_table(["layer", "material", "grown\nnm", "real\npart", "imaginary\npart", "R\n%"], rows, left=(1,))
+    return head, ["", *body, *(f"note: {note}" for note in locus.notes)]
 
 
 def _parts(y: complex, incident: float) -> list[str]:
@@ -106,7 +103,7 @@ def _parts(y: complex, incident: float) -> list[str]:
     return [f"{y.real:.4f}", f"{round(y.imag, 4) + 0.0:.4f}", f"{reflected:.4f}"]
 
 
-def _draw(design: Design, stack: Any, locus: AdmittanceLocus, options: Options) -> None:  # noqa: ANN401 - Stack
+def _draw(design: Design, stack: Stack, locus: AdmittanceLocus, options: Options) -> None:
     from filmstack.report.admittance_plot import locus_figure
     from filmstack.report.style import save_figure
 

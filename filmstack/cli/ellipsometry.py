@@ -8,11 +8,12 @@ from typing import TYPE_CHECKING, Any
 from filmstack.cli.designs import load_designs
 from filmstack.cli.options import add_options
 from filmstack.cli.parser import Options
-from filmstack.cli.spectrum import default_wavelengths, with_back_face
+from filmstack.cli.spectrum import DEFAULTS_OF_THE_DESIGN, default_wavelengths, with_back_face
 
 if TYPE_CHECKING:
     from filmstack.analysis.ellipsometry import Ellipsometry
     from filmstack.design import Design
+    from filmstack.stack import Stack
 
 HELP = (
     "Ellipsometric psi and delta, in degrees, of the light that a design reflects: tan(psi) exp(i delta) = -r_p / r_s, "
@@ -29,6 +30,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
         parser,
         "wavelength",
         "angle",
+        wavelength=DEFAULTS_OF_THE_DESIGN["wavelength"],
         angle={"help": f"angles of incidence in degrees: a list or START:STOP:STEP (default: {USUAL_ANGLE:g})"},
     )
     add_options(parser, "output", "plot", "json")
@@ -37,7 +39,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
 def run(options: Options) -> int:
     """Read a design, compute psi and delta, write and print them; return the exit status."""
     from filmstack.analysis.ellipsometry import ellipsometry
-    from filmstack.cli.output import json_text, write_csv, write_json
+    from filmstack.cli.output import deliver
 
     design = load_designs(options.designs)[0]
     stack = with_back_face(design.stack, "ideal", options.designs[0])
@@ -49,13 +51,10 @@ def run(options: Options) -> int:
         "notes": list(found.notes),
         **{name: [row[j] for row in rows] for j, name in enumerate(headings)},
     }
-    if options.output and options.output.suffix.lower() == ".csv":
-        write_csv(options.output, headings, rows)
-    elif options.output:
-        write_json(options.output, record)
     if options.plot:
-        _draw(design, found, options)
-    print(json_text(record) if options.json else "\n".join(_page(design, found, remarks)))
+        _draw(design, stack, found, options)
+    head = [f"{design.name} ({options.designs[0]})", "reflected light; the substrate counts as semi-infinite", *remarks]
+    deliver(options, (headings, rows), record, head, _body(stack, found))
     return 0
 
 
@@ -69,24 +68,24 @@ def _table(found: Ellipsometry) -> tuple[list[str], list[list[float]]]:
     return ["wavelength_nm", "angle_deg", "psi_deg", "delta_deg"], rows
 
 
-def _page(design: Design, found: Ellipsometry, remarks: tuple[str, ...]) -> list[str]:
-    from filmstack.cli.output import format_table, material_lines
+def _body(stack: Stack, found: Ellipsometry) -> list[str]:
+    from filmstack.cli.output import format_table, material_lines, thinned
 
-    lines = [design.name, "reflected light; the substrate counts as semi-infinite", *remarks]
+    lines: list[str] = []
     for angle in dict.fromkeys(found.angle_deg.tolist()):
-        rows = [row for row in _table(found)[1] if row[1] == angle]
+        rows, left_out = thinned([row for row in _table(found)[1] if row[1] == angle], "wavelengths")
         cells = [[f"{row[0]:g}", f"{row[2]:.4f}", f"{row[3]:.4f}"] for row in rows]
         lines += ["", f"angle of incidence {angle:g} deg"]
-        lines += format_table(["wavelength\nnm", "psi\ndeg", "delta\ndeg"], cells)
-    lines += ["", "materials", *material_lines(design.stack.materials)]
+        lines += [*format_table(["wavelength\nnm", "psi\ndeg", "delta\ndeg"], cells), *left_out]
+    lines += ["", "materials", *material_lines(stack.materials)]
     return [*lines, *(f"note: {note}" for note in found.notes)]
 
 
-def _draw(design: Design, found: Ellipsometry, options: Options) -> None:
+def _draw(design: Design, stack: Stack, found: Ellipsometry, options: Options) -> None:
     from filmstack.report.ellipsometry_plot import ellipsometry_figure
     from filmstack.report.style import save_figure
 
-    labels: Any = dict.fromkeys(material.label for material in design.stack.materials)
+    labels: Any = dict.fromkeys(material.label for material in stack.materials)
     figure = ellipsometry_figure(
         found,
         title=design.name,

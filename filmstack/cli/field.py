@@ -8,11 +8,12 @@ from typing import TYPE_CHECKING, Any
 from filmstack.cli.designs import load_designs
 from filmstack.cli.options import add_options
 from filmstack.cli.parser import Options
-from filmstack.cli.spectrum import with_back_face
+from filmstack.cli.spectrum import DEFAULTS_OF_THE_DESIGN, with_back_face
 
 if TYPE_CHECKING:
     from filmstack.analysis.field import Field
     from filmstack.design import Design
+    from filmstack.stack import Stack
 
 HELP = (
     "Electric field inside a design: |E|^2 over that of the incident wave, its largest value in each layer and at each "
@@ -28,6 +29,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
         parser,
         "wavelength",
         "angle",
+        angle=DEFAULTS_OF_THE_DESIGN["angle"],
         wavelength={
             "help": "vacuum wavelengths: a list, START:STOP:STEP or a file; nm, or um, eV, cm-1 by suffix "
             "(default: the reference wavelength)"
@@ -46,7 +48,7 @@ def run(options: Options) -> int:
     """Read a design, compute its field, write and print it; return the exit status."""
     from filmstack.analysis.field import field
     from filmstack.analysis.spectrum import spectrum
-    from filmstack.cli.output import json_text, write_csv, write_json
+    from filmstack.cli.output import deliver
 
     design = load_designs(options.designs)[0]
     stack = with_back_face(design.stack, "ideal", options.designs[0])
@@ -55,14 +57,14 @@ def run(options: Options) -> int:
     fields = [field(stack, wavelength, angle, polarization=p) for p in ("s", "p")]
     absorbed = spectrum(stack, wavelength, angle)
     record = _record(design, fields, (absorbed.A_layers_s, absorbed.A_layers_p), options.irradiance)
-    if options.output and options.output.suffix.lower() == ".csv":
-        write_csv(options.output, *_depth_table(fields))
-    elif options.output:
-        write_json(options.output, record)
     if options.plot:
         _draw(design, stack, fields, options)
-    print(json_text(record) if options.json else "\n".join(_page(design, stack, record)))
+    head = [f"{design.name} ({options.designs[0]})", _WHAT]
+    deliver(options, _depth_table(fields), record, head, _body(stack, record))
     return 0
+
+
+_WHAT = "|E|^2 over that of the incident wave; the substrate counts as semi-infinite"
 
 
 def _depth_table(fields: list[Field]) -> tuple[list[str], list[list[Any]]]:
@@ -84,7 +86,7 @@ def _record(design: Design, fields: list[Field], absorbed: tuple[Any, Any], irra
     for one, parts in zip(fields, absorbed, strict=True):
         largest, where = one.largest_in_layers
         interfaces = one.at_interfaces
-        strength = None if irradiance is None else one.volt_per_metre(irradiance).max(axis=0)
+        strength = None if irradiance is None else one.volt_per_metre(irradiance)
         for j, angle in enumerate(one.angle_deg.tolist()):
             for i, wavelength in enumerate(one.wavelength_nm.tolist()):
                 case = {
@@ -97,15 +99,16 @@ def _record(design: Design, fields: list[Field], absorbed: tuple[Any, Any], irra
                     "absorptance_of_layers": parts[:, j, i].tolist(),
                 }
                 if strength is not None:
-                    case["largest_volt_per_metre"] = float(strength[j, i])
+                    case["largest_volt_per_metre"] = float(strength[:, j, i].max())
+                    case["depth_of_largest_volt_per_metre_nm"] = float(one.depth_nm[strength[:, j, i].argmax()])
                 cases.append(case)
     return {"design": design.name, "cases": cases, "notes": list(fields[0].notes)}
 
 
-def _page(design: Design, stack: Any, record: dict[str, Any]) -> list[str]:  # noqa: ANN401 - Stack, loaded late
+def _body(stack: Stack, record: dict[str, Any]) -> list[str]:
     from filmstack.cli.output import format_table
 
-    lines = [design.name, "|E|^2 over that of the incident wave; the substrate counts as semi-infinite"]
+    lines: list[str] = []
     names = [film.material.label for film in stack.films]
     for case in record["cases"]:
         straight = case["angle_deg"] == 0.0
@@ -114,7 +117,8 @@ def _page(design: Design, stack: Any, record: dict[str, Any]) -> list[str]:  # n
         seen = "s and p alike" if straight else f"{case['polarization']} polarization"
         lines += ["", f"{case['wavelength_nm']:g} nm, {case['angle_deg']:g} deg, {seen}"]
         if "largest_volt_per_metre" in case:
-            lines.append(f"largest field {case['largest_volt_per_metre']:.4g} V/m")
+            depth = case["depth_of_largest_volt_per_metre_nm"]
+            lines.append(f"largest field {case['largest_volt_per_metre']:.4g} V/m, at a depth of {depth:.1f} nm")
         rows = [
             [str(number + 1), name, f"{case['largest_in_layers'][number]:.4f}",
              f"{case['depth_of_largest_nm'][number]:.1f}", f"{case['at_interfaces'][number]:.4f}",
@@ -122,12 +126,12 @@ def _page(design: Design, stack: Any, record: dict[str, Any]) -> list[str]:  # n
             for number, name in enumerate(names)
         ]  # fmt: skip
         rows.append(["", "substrate", "", "", f"{case['at_interfaces'][-1]:.4f}", ""])
-        headings = ["layer", "material", "largest\n|E|^2", "at depth\nnm", "at front\nface", "absorbed\n%"]
+        headings = ["layer", "material", "largest\n|E|^2", "at depth\nnm", "front face,\nlarger side", "absorbed\n%"]
         lines += format_table(headings, rows, left=(1,))
     return [*lines, "", *(f"note: {note}" for note in record["notes"])]
 
 
-def _draw(design: Design, stack: Any, fields: list[Field], options: Options) -> None:  # noqa: ANN401 - Stack
+def _draw(design: Design, stack: Stack, fields: list[Field], options: Options) -> None:
     from filmstack.report.field_plot import field_figure
     from filmstack.report.style import save_figure
 

@@ -182,3 +182,58 @@ def _finite(value: object) -> object:
     if isinstance(value, dict):
         return {key: _finite(part) for key, part in value.items()}
     return [_finite(part) for part in value] if isinstance(value, list | tuple) else value
+
+
+MOST_ROWS = 60
+"""Rows of a table on the page; of more, every so many-th is shown."""
+
+
+def thinned(rows: Sequence[Any], name: str) -> tuple[Sequence[Any], list[str]]:
+    """Return the rows that a page shows, and what it leaves out, in words.
+
+    Parameters
+    ----------
+    rows : sequence
+        All rows.
+    name : str
+        What a row is, in the plural.
+
+    Returns
+    -------
+    sequence, list of str
+    """
+    step = -(-len(rows) // MOST_ROWS)
+    if step <= 1:
+        return rows, []
+    return rows[::step], [f"shown: 1 of every {step} of {len(rows)} {name}; --output FILE writes all"]
+
+
+def deliver(
+    options: Any,  # noqa: ANN401 - the options of a command with --output, --plot and --json
+    table: tuple[Sequence[str], Iterable[Sequence[object]]],
+    record: dict[str, Any],
+    head: Sequence[str],
+    body: Sequence[str],
+) -> None:
+    """Write what was asked for, and print: JSON, or a page that says what was written.
+
+    Parameters
+    ----------
+    options : Options
+        With `output`, `plot` and `json`; the picture is written already.
+    table : (headings, rows)
+        For CSV.
+    record : dict
+        For JSON.
+    head, body : sequence of str
+        The page; the body is left out where the numbers went to a file.
+    """
+    if options.output and options.output.suffix.lower() == ".csv":
+        write_csv(options.output, *table)
+    elif options.output:
+        write_json(options.output, record)
+    if options.json:
+        print(json_text(record))
+        return
+    written = [f"wrote {path}" for path in (options.output, options.plot) if path]
+    print("\n".join([*head, *([] if options.output else body), *([""] if written else []), *written]))

@@ -8,23 +8,25 @@ from typing import TYPE_CHECKING, Any
 from filmstack.cli.designs import load_designs
 from filmstack.cli.options import add_options
 from filmstack.cli.parser import Options, one_of
-from filmstack.cli.spectrum import default_wavelengths, with_back_face
+from filmstack.cli.spectrum import DEFAULTS_OF_THE_DESIGN, default_wavelengths, with_back_face
+from filmstack.errors import ArgumentError
 
 if TYPE_CHECKING:
     from filmstack.analysis.phase import Phase
     from filmstack.design import Design
+    from filmstack.stack import Stack
 
 HELP = (
     "Phase, group delay, GDD and TOD of reflected or transmitted light for s and p, by exact differentiation through "
     "layers and dispersion at a fixed angle. A thick substrate counts as semi-infinite: its back face has no phase. "
-    "Delays are positive; units are rad, fs, fs^2 and fs^3."
+    "A later pulse counts as a positive delay (near a resonance it can be negative); units are rad, fs, fs^2, fs^3."
 )
 
 
 def add_arguments(parser: argparse.ArgumentParser) -> None:
     """Add the arguments of the command to its parser."""
     parser.add_argument("designs", nargs=1, metavar="DESIGN", help="design file (.toml)")
-    add_options(parser, "wavelength", "angle")
+    add_options(parser, "wavelength", "angle", **DEFAULTS_OF_THE_DESIGN)
     parser.add_argument(
         "--of",
         type=one_of("--of", "r", "t"),
@@ -45,23 +47,20 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
 def run(options: Options) -> int:
     """Read a design, compute its phase, write and print it; return the exit status."""
     from filmstack.analysis.phase import phase
-    from filmstack.cli.output import json_text, write_csv, write_json
+    from filmstack.cli.output import deliver
 
+    if options.of == "t" and options.plane != "front":
+        raise ArgumentError("--plane: the phase of t runs from the first to the last interface. Leave --plane out")
     design = load_designs(options.designs)[0]
     stack = with_back_face(design.stack, "ideal", options.designs[0])
     wavelength, remarks = default_wavelengths(design, stack, options)
     result = phase(stack, wavelength, options.angle or design.incident_angle_deg, plane=options.plane)
-    headings, rows = _table(result, options.of)
-    if options.output and options.output.suffix.lower() == ".csv":
-        write_csv(options.output, headings, rows)
-    elif options.output:
-        write_json(options.output, _record(design, result, options.of))
     if options.plot:
-        _draw(design, result, options)
-    if options.json:
-        print(json_text(_record(design, result, options.of)))
-    else:
-        print("\n".join(_page(design, result, options, remarks)))
+        _draw(design, stack, result, options)
+    head = [f"{design.name} ({options.designs[0]})", _conditions(result, options.of), *remarks]
+    deliver(
+        options, _table(result, options.of), _record(design, result, options.of), head, _body(stack, result, options)
+    )
     return 0
 
 
@@ -93,33 +92,35 @@ def _conditions(result: Phase, of: str) -> str:
     return f"reflected light, {place}; the substrate counts as semi-infinite"
 
 
-def _page(design: Design, result: Phase, options: Options, remarks: tuple[str, ...]) -> list[str]:
-    from filmstack.cli.output import format_table, material_lines
+def _body(stack: Stack, result: Phase, options: Options) -> list[str]:
+    from filmstack.cli.output import format_table, material_lines, thinned
 
     _, rows = _table(result, options.of)
-    lines = [design.name, _conditions(result, options.of), *remarks]
+    lines: list[str] = []
     for angle in dict.fromkeys(result.angle_deg.tolist()):
         alike = angle == 0.0
         headings = ["wavelength\nnm"]
         headings += [
             f"{name}{'' if alike else f' {p}'}\n{unit}" for p in ("s" if alike else "sp") for name, unit in _UNITS
         ]
-        count = 2 + len(headings) - 1
-        cells = [[f"{row[0]:g}", *(f"{value:.4f}" for value in row[2:count])] for row in rows if row[1] == angle]
+        shown, left_out = thinned([row for row in rows if row[1] == angle], "wavelengths")
+        cells = [
+            [f"{row[0]:g}", *(f"{round(value, 4) + 0.0:.4f}" for value in row[2 : 1 + len(headings)])] for row in shown
+        ]
         title = f"angle of incidence {angle:g} deg{', s and p alike' if alike else ''}"
-        lines += ["", title, *format_table(headings, cells)]
-    lines += ["", "materials", *material_lines(design.stack.materials)]
+        lines += ["", title, *format_table(headings, cells), *left_out]
+    lines += ["", "materials", *material_lines(stack.materials)]
     return [*lines, *(f"note: {note}" for note in result.notes)]
 
 
 _UNITS = (("phase", "rad"), ("delay", "fs"), ("GDD", "fs^2"), ("TOD", "fs^3"))
 
 
-def _draw(design: Design, result: Phase, options: Options) -> None:
+def _draw(design: Design, stack: Stack, result: Phase, options: Options) -> None:
     from filmstack.report.phase_plot import phase_figure
     from filmstack.report.style import save_figure
 
-    labels = dict.fromkeys(material.label for material in design.stack.materials)
+    labels = dict.fromkeys(material.label for material in stack.materials)
     text = _conditions(result, options.of)
     figure = phase_figure(
         result,

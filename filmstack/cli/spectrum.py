@@ -35,6 +35,14 @@ SHORTEST, LONGEST = 0.7, 1.5
 """Default wavelengths, in parts of the reference wavelength."""
 MOST_DEFAULT_WAVELENGTHS = 500
 
+DEFAULTS_OF_THE_DESIGN = {
+    "wavelength": {
+        "help": f"{OPTIONS['wavelength']['help']} (default: {SHORTEST:g} to {LONGEST:g} times the reference wavelength)"
+    },
+    "angle": {"help": "angles of incidence in degrees: a list or START:STOP:STEP (default: those of the design)"},
+}
+"""Help of --wavelength and --angle where the design says what is usual."""
+
 
 @dataclass(frozen=True)
 class Part:
@@ -62,18 +70,7 @@ class Part:
 def add_arguments(parser: argparse.ArgumentParser) -> None:
     """Add the arguments of the command to its parser."""
     parser.add_argument("designs", nargs="+", metavar="DESIGN", help="design files (.toml)")
-    add_options(
-        parser,
-        "wavelength",
-        "angle",
-        "polarization",
-        "side",
-        wavelength={
-            "help": f"{OPTIONS['wavelength']['help']} "
-            f"(default: {SHORTEST:g} to {LONGEST:g} times the reference wavelength)"
-        },
-        angle={"help": "angles of incidence in degrees: a list or START:STOP:STEP (default: those of the design)"},
-    )
+    add_options(parser, "wavelength", "angle", "polarization", "side", **DEFAULTS_OF_THE_DESIGN)
     parser.add_argument(
         "--back-face",
         type=one_of("--back-face", "coated", "bare", "ideal"),

@@ -74,9 +74,8 @@ class Table(Material):
         """How a person's own file was understood, in words; also the first note of its provenance."""
         self.wavelength_nm, self.n, self.k, self.tolerance = wavelength_nm, n, k, tolerance
         self.energy_ev = PLANCK_EV_NM / wavelength_nm[::-1]
-        patience = 20 if len(n) <= 500 else 1
         self._deviation = deviation
-        self.n_curve = n_curve or fit_curve(self.energy_ev, n[::-1], tolerance[::-1], patience)
+        self.n_curve = n_curve or fit_curve(self.energy_ev, n[::-1], tolerance[::-1], quick=True)
         self.k_curve: MonotoneCurve = monotone_curve(self.energy_ev, k[::-1])
 
     @property

@@ -74,7 +74,8 @@ def _draw(axes: Axes, locus: AdmittanceLocus, materials: Sequence[str]) -> None:
         name = materials[film]
         told = name not in [line.get_label() for line in axes.get_lines()]
         axes.plot(y.real, y.imag, label=name if told else "_", **line_style(names.index(name)))
-        middle = len(y) // 2
+        along = np.concatenate([[0.0], np.cumsum(np.abs(np.diff(y)))])
+        middle = min(int(np.searchsorted(along, 0.5 * along[-1])), len(y) - 2)
         axes.annotate(
             "", (y[middle + 1].real, y[middle + 1].imag), (y[middle].real, y[middle].imag),
             arrowprops={"arrowstyle": "-|>", "color": INK, "shrinkA": 0, "shrinkB": 0},

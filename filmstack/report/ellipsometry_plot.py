@@ -5,7 +5,19 @@ from __future__ import annotations
 from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
-from filmstack.report.style import GREY, Margins, head_lines, label_lines, line_style, panel_grid, quiet_style
+import numpy as np
+
+from filmstack.report.style import (
+    GREY,
+    MOST_LINES,
+    Margins,
+    head_lines,
+    label_lines,
+    line_style,
+    panel_grid,
+    quiet_style,
+    refuse_many,
+)
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -13,11 +25,9 @@ if TYPE_CHECKING:
 
     from filmstack.analysis.ellipsometry import Ellipsometry
 
-MOST_ANGLES = 6
-
 
 def ellipsometry_figure(found: Ellipsometry, *, title: str, conditions: str, small_print: Sequence[str] = ()) -> Figure:
-    """Return a figure of psi and delta against wavelength, a line an angle (the first six).
+    """Return a figure of psi and delta against wavelength, a line an angle.
 
     Parameters
     ----------
@@ -67,8 +77,12 @@ def draw_ellipsometry(found: Ellipsometry, axes: Axes | None = None) -> Axes:
 
 
 def _draw(axes: Axes, found: Ellipsometry, name: str, label: str) -> None:
-    values = getattr(found, name)[:MOST_ANGLES]
-    lines = [line for j, row in enumerate(values) for line in axes.plot(found.wavelength_nm, row, **line_style(j))]
+    refuse_many(found.angle_deg.size, MOST_LINES, "Choose fewer angles")
+    # Delta starts anew at 360: the line is broken there.
+    rows = getattr(found, name).copy()
+    jumps = np.abs(np.diff(rows, axis=1)) > 180.0
+    rows[:, 1:][jumps] = np.nan
+    lines = [line for j, row in enumerate(rows) for line in axes.plot(found.wavelength_nm, row, **line_style(j))]
     axes.margins(x=0)
     axes.set_ylabel(label)
-    label_lines(axes, lines, [f"{angle:g}°" for angle in found.angle_deg[:MOST_ANGLES].tolist()])
+    label_lines(axes, lines, [f"{angle:g}°" for angle in found.angle_deg.tolist()])

@@ -7,7 +7,18 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from filmstack.report.style import FAINT, GREY, Margins, head_lines, label_lines, line_style, panel_grid, quiet_style
+from filmstack.report.style import (
+    FAINT,
+    GREY,
+    MOST_LINES,
+    Margins,
+    head_lines,
+    label_lines,
+    line_style,
+    panel_grid,
+    quiet_style,
+    refuse_many,
+)
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -16,7 +27,6 @@ if TYPE_CHECKING:
 
     from filmstack.analysis.field import Field
 
-MOST_LINES = 4
 MOST_NAMES = 12
 
 
@@ -86,13 +96,13 @@ def _draw(axes: Axes, field: Field) -> None:
     for number, (a, b) in enumerate(zip(field.boundaries_nm[:-1], field.boundaries_nm[1:], strict=True)):
         if number % 2 == 0:
             axes.axvspan(a, b, color=FAINT, alpha=0.6, linewidth=0, zorder=0)
+    refuse_many(field.intensity[0].size, MOST_LINES, "Choose fewer wavelengths or angles")
     lines: list[Line2D] = []
     labels: list[str] = []
     for j, angle in enumerate(field.angle_deg.tolist()):
         for i, wavelength in enumerate(field.wavelength_nm.tolist()):
-            if len(lines) < MOST_LINES:
-                lines += axes.plot(field.depth_nm, field.intensity[:, j, i], **line_style(len(labels)))
-                labels.append(f"{wavelength:g} nm, {angle:g}°")
+            lines += axes.plot(field.depth_nm, field.intensity[:, j, i], **line_style(len(labels)))
+            labels.append(f"{wavelength:g} nm, {angle:g}°")
     axes.set_ylim(0.0, 1.06 * max(float(np.max(line.get_ydata())) for line in lines))
     axes.grid(False)
     axes.margins(x=0)

@@ -7,7 +7,17 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from filmstack.report.style import GREY, Margins, head_lines, label_lines, line_style, panel_grid, quiet_style
+from filmstack.report.style import (
+    GREY,
+    MOST_LINES,
+    Margins,
+    head_lines,
+    label_lines,
+    line_style,
+    panel_grid,
+    quiet_style,
+    refuse_many,
+)
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -16,19 +26,18 @@ if TYPE_CHECKING:
     from filmstack.analysis.phase import Phase, PhaseOf
     from filmstack.arraytypes import FloatArray
 
-PANELS = {"gd_fs": "group delay (fs)", "gdd_fs2": "GDD (fs²)", "tod_fs3": "TOD (fs³)"}
-MOST_ANGLES = 4
+PANELS = {"phase_rad": "phase (rad)", "gd_fs": "group delay (fs)", "gdd_fs2": "GDD (fs²)", "tod_fs3": "TOD (fs³)"}
 
 
 def phase_figure(
     phase: Phase, *, transmitted: bool, title: str, conditions: str, small_print: Sequence[str] = ()
 ) -> Figure:
-    """Return a figure of group delay, GDD and TOD against wavelength, s and p.
+    """Return a figure of phase, group delay, GDD and TOD against wavelength, s and p.
 
     Parameters
     ----------
     phase : Phase
-        What to draw; the first four angles.
+        What to draw.
     transmitted : bool
         Of t instead of r.
     title, conditions : str
@@ -43,7 +52,7 @@ def phase_figure(
     part = phase.transmission if transmitted else phase.reflection
     with quiet_style():
         figure, panels = panel_grid(
-            len(PANELS), 1, panel=(6.2, 2.0), margins=Margins(top=0.85, right=1.1), small_print=small_print
+            len(PANELS), 1, panel=(6.2, 1.8), margins=Margins(top=0.85, right=1.1), small_print=small_print
         )
         for axes, (name, label) in zip(panels[:, 0], PANELS.items(), strict=True):
             _draw(axes, phase, part, name)
@@ -59,7 +68,7 @@ def draw_phase(phase: Phase, axes: Axes | None = None) -> Axes:
     Parameters
     ----------
     phase : Phase
-        What to draw; the first four angles.
+        What to draw.
     axes : Axes, optional
         Where to draw; a new figure if not given.
 
@@ -81,7 +90,8 @@ def draw_phase(phase: Phase, axes: Axes | None = None) -> Axes:
 def _draw(axes: Axes, phase: Phase, part: PhaseOf, name: str) -> None:
     labels: list[str] = []
     lines = []
-    for j, angle in enumerate(phase.angle_deg[:MOST_ANGLES].tolist()):
+    refuse_many(int(np.sum(np.where(phase.angle_deg == 0.0, 1, 2))), MOST_LINES, "Choose fewer angles")
+    for j, angle in enumerate(phase.angle_deg.tolist()):
         for p in "s" if angle == 0.0 else "sp":
             values: FloatArray = getattr(part, f"{name}_{p}")[j]
             lines += axes.plot(phase.wavelength_nm, values, **line_style(len(labels)))
@@ -94,4 +104,5 @@ def _draw(axes: Axes, phase: Phase, part: PhaseOf, name: str) -> None:
     if np.nanmin(drawn) < low - room or np.nanmax(drawn) > high + room:
         axes.set_title("axis cut to 98 % of the points", color=GREY, size=7, loc="right")
     axes.set_ylim(low - room, high + room)
+    axes.ticklabel_format(axis="y", style="sci", scilimits=(-3, 4))
     label_lines(axes, lines, labels)

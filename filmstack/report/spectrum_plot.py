@@ -28,6 +28,7 @@ from filmstack.report.style import (
     line_style,
     panel_grid,
     quiet_style,
+    refuse_many,
 )
 
 if TYPE_CHECKING:
@@ -370,10 +371,5 @@ def _polarization_title(suffix: str) -> str:
 
 
 def _refuse_many(lines: int, view: View) -> None:
-    if lines > MOST_LINES:
-        other = "angles" if view == "wavelength" else "wavelengths"
-        raise FilmstackError(
-            "picture",
-            f"expected at most {MOST_LINES} lines a panel, got {lines}",
-            f"Choose fewer designs or {other}, or draw a map over wavelength and angle",
-        )
+    other = "angles" if view == "wavelength" else "wavelengths"
+    refuse_many(lines, MOST_LINES, f"Choose fewer designs or {other}, or draw a map over wavelength and angle")

@@ -18,6 +18,7 @@ import numpy as np
 from matplotlib.figure import Figure
 from matplotlib.lines import Line2D
 
+from filmstack.errors import FilmstackError
 from filmstack.files.atomic import atomic_writer
 
 if TYPE_CHECKING:
@@ -164,6 +165,25 @@ def panel_grid(
         0.25 / width, 0.1 / height, "\n".join(wrapped), size=6.5, color=GREY, va="bottom", ha="left", linespacing=1.25
     )
     return figure, np.asarray(axes)
+
+
+def refuse_many(lines: int, most: int, advice: str) -> None:
+    """Refuse a picture of more lines than can be told apart.
+
+    Parameters
+    ----------
+    lines, most : int
+        Lines asked for, and how many a panel can hold.
+    advice : str
+        What to do.
+
+    Raises
+    ------
+    FilmstackError
+        If there are too many.
+    """
+    if lines > most:
+        raise FilmstackError("picture", f"expected at most {most} lines a panel, got {lines}", advice)
 
 
 def head_lines(figure: Figure, title: str, subtitle: str) -> None:

@@ -44,6 +44,8 @@ def test_psi_and_delta(design, tmp_path, capsys):
     table, picture = tmp_path / "e.csv", tmp_path / "e.svg"
     words = ["ellipsometry", design, "--wavelength", "550", "--angle", "0,60", "--output", str(table)]
     assert main([*words, "--plot", str(picture)]) == 0
+    assert f"wrote {table}" in capsys.readouterr().out
+    assert main(words[:-2]) == 0
     assert "180.0000" in capsys.readouterr().out  # at normal incidence, by convention
     rows = list(csv.DictReader(table.read_text(encoding="utf-8").splitlines()))
     assert float(rows[0]["psi_deg"]) == pytest.approx(45.0)

@@ -43,7 +43,9 @@ def test_delay_of_a_spacer(design, tmp_path, capsys):
     assert main(words) == 0
     text = capsys.readouterr().out
     assert "transmitted light, from the first to the last interface" in text
-    assert "50.0346" in text
+    assert f"wrote {picture}" in text
+    assert main(["phase", str(design), "--wavelength", "790:810:10", "--of", "t"]) == 0
+    assert "50.0346" in capsys.readouterr().out
     rows = list(csv.DictReader(table.read_text(encoding="utf-8").splitlines()))
     assert len(rows) == 3
     assert float(rows[1]["t_gd_fs_s"]) == pytest.approx(1.5 * 1e4 / 299.792458, rel=1e-12)

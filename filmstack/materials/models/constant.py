@@ -61,6 +61,9 @@ def constant(n: float, k: float = 0.0, allow_gain: bool = False) -> Material:
     >>> complex(constant(1.5).index(550.0))
     (1.5+0j)
     """
+    for name, given in (("n", n), ("k", k)):
+        if isinstance(given, str | bool | complex):
+            raise ArgumentError(f"{name}: expected a real number, got {given!r}. N = n - ik is given as n and k")
     n, k = float(n), float(k)
     if not (np.isfinite(n) and n >= 0.0):
         raise ArgumentError(f"n: expected a finite index >= 0, got {n:g}")

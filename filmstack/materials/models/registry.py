@@ -75,6 +75,17 @@ def formula_entries() -> Mapping[str, Mapping[str, Any]]:
     return entries
 
 
+N_ONLY = {"sellmeier", "sellmeier-rational", "cauchy", "power-series"}
+"""Models that give n alone."""
+
+
+def _notes(entry: Mapping[str, Any]) -> tuple[str, ...]:
+    notes: list[str] = list(entry.get("notes", ()))
+    if entry["model"] in N_ONLY and not any(note.startswith("n only") for note in notes):
+        notes.append("n only: k is taken as 0")
+    return tuple(notes)
+
+
 def entry_provenance(key: str, entry: Mapping[str, Any]) -> Provenance:
     """Return where the numbers of a shipped entry come from."""
     low, high = entry["range_nm"]
@@ -86,7 +97,7 @@ def entry_provenance(key: str, entry: Mapping[str, Any]) -> Provenance:
         range_nm=(float(low), float(high)),
         temperature=entry["temperature"],
         status=f"{entry['status']}; index {entry['index_of']}",
-        notes=tuple(entry.get("notes", ())),
+        notes=_notes(entry),
     )
 
 

@@ -18,7 +18,7 @@ if TYPE_CHECKING:
     from filmstack.arraytypes import ComplexArray, FloatArray, IntArray
     from filmstack.stack import Stack
 
-STEPS_A_LAYER, MOST_HALVINGS = 65, 12
+STEPS_A_LAYER, MOST_HALVINGS = 65, 40
 
 
 @dataclass(frozen=True, eq=False)

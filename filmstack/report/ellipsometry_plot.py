@@ -84,5 +84,9 @@ def _draw(axes: Axes, found: Ellipsometry, name: str, label: str) -> None:
     rows[:, 1:][jumps] = np.nan
     lines = [line for j, row in enumerate(rows) for line in axes.plot(found.wavelength_nm, row, **line_style(j))]
     axes.margins(x=0)
+    # Labels are placed by the axis, so it is fixed first.
+    low, high = (0.0, 90.0) if name == "psi_deg" else (0.0, 360.0)
+    axes.set_ylim(low, high)
+    axes.set_yticks(np.linspace(low, high, 7))
     axes.set_ylabel(label)
     label_lines(axes, lines, [f"{angle:g}°" for angle in found.angle_deg.tolist()])

@@ -215,7 +215,11 @@ def _derivatives(logarithm: Series, energy: FloatArray) -> list[FloatArray]:
 def _unwrapped(wrapped: FloatArray, slope: FloatArray, energy: FloatArray) -> FloatArray:
     """Unwrap along the wavelengths; the known slope says how far the phase goes from one to the next."""
     step = np.diff(wrapped, axis=1)
-    expected = 0.5 * (slope[:, 1:] + slope[:, :-1]) * np.diff(energy, axis=1)
+    width = np.diff(energy, axis=1)
+    expected = 0.5 * (slope[:, 1:] + slope[:, :-1]) * width
+    # A resonance narrower than the step tells nothing of the way between: there the nearest turn is taken.
+    narrow = 0.5 * np.abs((slope[:, 1:] - slope[:, :-1]) * width) > np.pi
+    expected = np.where(narrow, 0.0, expected)
     turns = np.nan_to_num(np.rint((expected - step) / (2.0 * np.pi)))
     out = wrapped.copy()
     out[:, 1:] += 2.0 * np.pi * np.cumsum(turns, axis=1)

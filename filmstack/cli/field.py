@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING, Any
 
 from filmstack.cli.designs import load_designs
 from filmstack.cli.options import add_options
-from filmstack.cli.parser import Options
+from filmstack.cli.parser import Options, number_from
 from filmstack.cli.spectrum import DEFAULTS_OF_THE_DESIGN, with_back_face
 
 if TYPE_CHECKING:
@@ -37,7 +37,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
     )
     parser.add_argument(
         "--irradiance",
-        type=float,
+        type=number_from("--irradiance", 0.0, "W/cm^2"),
         metavar="W",
         help="also |E| in V/m at this irradiance of the incident beam, in W/cm^2",
     )

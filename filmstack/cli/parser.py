@@ -7,6 +7,7 @@ so that a script keeps its meaning when an option is added.
 from __future__ import annotations
 
 import argparse
+import math
 import re
 from collections.abc import Callable, Sequence
 from typing import NoReturn, TypeAlias
@@ -62,6 +63,36 @@ class CommandParser(argparse.ArgumentParser):
                 )
             raise FilmstackError(f"{self._command}: unexpected argument {word!r}", "", f"See {self.prog} --help")
         return options
+
+
+def number_from(option: str, low: float, unit: str) -> Callable[[str], float]:
+    """Return a converter that takes a finite number.
+
+    Parameters
+    ----------
+    option : str
+        Name of the option, for the message.
+    low : float
+        Smallest value allowed.
+    unit : str
+        Unit of the number.
+
+    Returns
+    -------
+    callable
+        For the `type` of an argument.
+    """
+
+    def convert(text: str) -> float:
+        try:
+            value = float(text)
+        except ValueError:
+            value = math.nan
+        if not (math.isfinite(value) and value >= low):
+            raise FilmstackError(option, f"expected a finite number >= {low:g} {unit}, got {text!r}")
+        return value
+
+    return convert
 
 
 def one_of(option: str, *choices: str) -> Callable[[str], str]:

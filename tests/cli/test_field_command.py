@@ -47,6 +47,8 @@ def test_json_and_irradiance(design, capsys):
     assert case["largest_volt_per_metre"] == pytest.approx(1.2 * 2744.92, rel=1e-3)
 
 
-def test_bad_irradiance(design, capsys):
-    assert main(["field", design, "--irradiance", "-1"]) == 2
-    assert "irradiance_w_per_cm2: expected a finite number >= 0 W/cm^2, got -1" in capsys.readouterr().err
+@pytest.mark.parametrize("text", ["-1", "abc", "1e999"])
+def test_bad_irradiance(design, text, capsys):
+    assert main(["field", design, f"--irradiance={text}"]) == 2
+    message = f"--irradiance: expected a finite number >= 0 W/cm^2, got '{text}'"
+    assert message in capsys.readouterr().err

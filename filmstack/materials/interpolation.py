@@ -142,7 +142,9 @@ def _end_slope(h0: float, h1: float, rise0: float, rise1: float) -> float:
     return 3.0 * rise0 if rise0 * rise1 <= 0.0 and abs(slope) > abs(3.0 * rise0) else slope
 
 
-_MANY_ROWS = 250
+_MANY_ROWS = 200
+_SCATTERED = 0.1
+"""Share of rows off their neighbours from which the rows count as scattered."""
 
 
 def fit_curve(x: FloatArray, y: FloatArray, tolerance: FloatArray, *, quick: bool = False) -> Curve:
@@ -165,12 +167,12 @@ def fit_curve(x: FloatArray, y: FloatArray, tolerance: FloatArray, *, quick: boo
         shape of the rows (few rows, sharp features, noise above the printed digits).
     """
     shape = monotone_curve(x, y)
-    if quick and len(x) > _MANY_ROWS and rough_share(x, y, tolerance) > 0.1:
+    quick = quick and len(x) > _MANY_ROWS
+    if quick and rough_share(x, y, tolerance) > _SCATTERED:
         return shape
-    patience = 1 if quick and len(x) > _MANY_ROWS else 20
     for degree in (5, 3):
         if len(x) > degree + 1:
-            curve = _shaped(x, y, tolerance, degree, shape, patience)
+            curve = _shaped(x, y, tolerance, degree, shape, quick)
             if curve is not None:
                 return curve
     return shape
@@ -203,7 +205,7 @@ def rough_share(x: FloatArray, y: FloatArray, tolerance: FloatArray) -> float:
 
 
 def _shaped(
-    x: FloatArray, y: FloatArray, tolerance: FloatArray, degree: int, shape: MonotoneCurve, patience: int
+    x: FloatArray, y: FloatArray, tolerance: FloatArray, degree: int, shape: MonotoneCurve, quick: bool
 ) -> SplineCurve | None:
     """Return a smooth spline that keeps the shape of the rows, led by points of the monotone cubic where it strays."""
     places, allowed = _between(shape, tolerance)
@@ -213,7 +215,7 @@ def _shaped(
         at = np.concatenate([x, places[used]])
         order = np.argsort(at)
         values, room = np.concatenate([y, guide[used]]), np.concatenate([tolerance, 0.8 * allowed[used]])
-        curve = _smoothest(at[order], values[order], room[order], degree, patience)
+        curve = _smoothest(at[order], values[order], room[order], degree, quick)
         if curve is None:
             return None
         value = curve.derivative(places, 0)
@@ -226,13 +228,14 @@ def _shaped(
     return None
 
 
-def _smoothest(x: FloatArray, y: FloatArray, tolerance: FloatArray, degree: int, patience: int) -> SplineCurve | None:
+def _smoothest(x: FloatArray, y: FloatArray, tolerance: FloatArray, degree: int, quick: bool) -> SplineCurve | None:
     """Return a spline of few knots within the tolerance of every row.
 
     Rounding errors even over +- the tolerance have a mean square of tolerance^2 / 3, which sets the
     smoothing. Rows that come out beyond their tolerance get more weight until they are within; if
     that does not end, the curve may be less smooth, at last one through all rows.
     """
+    patience, haste = (1, 4) if quick else (20, 1)
     for share in (1.0 / 3.0, 0.1, 0.01):
         weight = 1.0 / tolerance
         for turn in range(60):
@@ -242,7 +245,7 @@ def _smoothest(x: FloatArray, y: FloatArray, tolerance: FloatArray, degree: int,
             misfit = np.abs(curve.derivative(x, 0) - y) / tolerance
             if np.all(misfit <= 1.0):
                 return curve
-            weight = weight * np.clip(misfit / 0.97, 1.0, 4.0)
+            weight = weight * np.clip((misfit / 0.97) ** haste, 1.0, 4.0)
     return _smoothed(x, y, 1.0 / tolerance, degree, 0.0)
 
 

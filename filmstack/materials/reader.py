@@ -26,6 +26,8 @@ _COMMENTS = ("#", "%", "//", "!")
 _SEPARATORS = {";": "semicolons", "\t": "tabs", "|": "bars", ",": "commas"}
 _COMMAS = "Commas can not both separate and mark decimals: separate the columns by semicolons"
 _MOST_FAULTS = 10
+_FEW_ROWS = 6
+"""So many rows are too few for a smooth curve in any case."""
 _DESCRIPTION = ("key", "label", "source", "form", "temperature", "status")
 
 
@@ -275,6 +277,10 @@ def _table(text: Text, columns: Columns, rows: Rows, allow_gain: bool) -> Table:
     moved = float(np.max(np.abs(table.n_curve.derivative(table.energy_ev, 0) - table.n[::-1])))
     if moved > 1e-5:
         told = f"{told}, n drawn smoothly, at most {moved:.1g} from the rows"
+        table.provenance = replace(provenance, notes=(told,))
+    if len(rows.n) > _FEW_ROWS and table.derivative_order < 2:
+        told = f"{told}, n drawn from row to row without a smooth second derivative (its rows scatter or jump by more "
+        told += "than their last digit: give n with the digits that are certain)"
         table.provenance = replace(provenance, notes=(told,))
     table.reading_report = told
     return table

@@ -1,12 +1,14 @@
 """Curves through tables: against scipy, against a formula, and the group delay dispersion they give."""
 
+from time import process_time
+
 import numpy as np
 import pytest
 from scipy.interpolate import BSpline, PchipInterpolator, make_lsq_spline
 
 import filmstack as fs
 from filmstack.constants import HBAR_EV_FS, PLANCK_EV_NM, SPEED_OF_LIGHT_NM_PER_FS
-from filmstack.materials.interpolation import MonotoneCurve, SplineCurve, fit_curve, monotone_curve
+from filmstack.materials.interpolation import MonotoneCurve, SplineCurve, fit_curve, monotone_curve, rough_share
 from filmstack.materials.library import list_materials
 from filmstack.materials.tables import Table
 
@@ -135,6 +137,38 @@ def test_uncertainty_is_that_of_many_roundings():
         ]
         # a standard deviation of 600 samples is known to 3 per cent
         np.testing.assert_allclose(table.derivative_uncertainty(order, at), np.std(fits, axis=0), rtol=0.15)
+
+
+def noisy_silica(rows, scatter, decimals):
+    """Return a table of fused silica with scatter, as a measurement would give it."""
+    silica = fs.material("fused silica")
+    wavelength = np.linspace(300.0, 2000.0, rows)
+    n = silica.index(wavelength).real + np.random.default_rng(5).normal(size=rows) * scatter
+    return PLANCK_EV_NM / wavelength[::-1], np.round(n[::-1], decimals), np.full(rows, 0.5 * 10.0**-decimals)
+
+
+def test_scatter_above_the_printed_digits_is_told_from_rounding():
+    for rows in (300, 5000):
+        for decimals in (3, 4, 5, 6):
+            assert rough_share(*noisy_silica(rows, 0.0, decimals)) == 0.0
+            assert rough_share(*noisy_silica(rows, 10.0 * 10.0**-decimals, decimals)) > 0.5
+
+
+def test_many_scattered_rows_do_not_keep_a_person_waiting():
+    rows = noisy_silica(5000, 1e-4, 6)
+    start = process_time()
+    curve = fit_curve(*rows, quick=True)
+    assert process_time() - start < 1.0  # a smoothing spline of degree 5 or 3 takes minutes here
+    assert isinstance(curve, MonotoneCurve)
+    np.testing.assert_array_equal(curve.derivative(rows[0], 0), rows[1])
+
+
+@pytest.mark.parametrize("decimals", [4, 6])
+def test_many_smooth_rows_keep_their_derivatives(decimals):
+    x, n, tolerance = noisy_silica(1000, 0.0, decimals)
+    curve = fit_curve(x, n, tolerance, quick=True)
+    assert curve.derivative_order == 4
+    assert np.all(np.abs(curve.derivative(x, 0) - n) <= tolerance)
 
 
 def test_sharp_features_are_not_overshot():

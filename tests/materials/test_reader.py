@@ -160,6 +160,20 @@ def test_the_smoothing_is_told(tmp_path):
     assert table.reading_report.endswith(f"n drawn smoothly, at most {moved.max():.1g} from the rows")
 
 
+def test_scatter_above_the_printed_digits_is_told(tmp_path):
+    wavelength = np.linspace(400.0, 900.0, 300)
+    n = 1.45 + 3500.0 / wavelength**2 + np.random.default_rng(1).normal(size=300) * 1e-3
+    rows = "".join(f"{w:.2f},{x:.6f}\n" for w, x in zip(wavelength, n, strict=True))
+    (tmp_path / "film.csv").write_text(f"wavelength_nm,n\n{rows}")
+    table = fs.material(tmp_path / "film.csv")
+    assert table.derivative_order == 1
+    assert table.provenance.notes == (table.reading_report,)
+    assert table.reading_report == (
+        "read 300 rows, 400 to 900 nm, k taken as 0, n drawn from row to row without a smooth second derivative "
+        "(its rows scatter or jump by more than their last digit: give n with the digits that are certain)"
+    )
+
+
 @pytest.mark.parametrize("ending", [".txt", ".dat", ".tsv", ".CSV"])
 def test_other_endings_of_text_files_are_read(tmp_path, ending):
     path = tmp_path / f"film{ending}"

@@ -5,7 +5,7 @@ from __future__ import annotations
 import argparse
 from typing import TYPE_CHECKING, Any
 
-from filmstack.cli.designs import load_designs
+from filmstack.cli.designs import load_designs, naming
 from filmstack.cli.options import add_options
 from filmstack.cli.parser import Options, one_of
 from filmstack.cli.spectrum import with_back_face
@@ -54,7 +54,8 @@ def run(options: Options) -> int:
     stack = with_back_face(design.stack, "ideal", options.designs[0])
     wavelength = _one("--wavelength", options.wavelength, design.reference_wavelength_nm)
     angle = _one("--angle", options.angle, design.incident_angle_deg[0])
-    locus = admittance_locus(stack, wavelength, angle, polarization=options.polarization)
+    with naming(options.designs[0]):
+        locus = admittance_locus(stack, wavelength, angle, polarization=options.polarization)
     headings, rows = _table(locus)
     record = {"design": design.name, "wavelength_nm": wavelength, "angle_deg": angle,
               "polarization": locus.polarization, "incident_admittance": locus.incident, "notes": list(locus.notes),

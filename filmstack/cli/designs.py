@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
+from contextlib import contextmanager
 from typing import TYPE_CHECKING
 
 from filmstack.errors import FilmstackError, all_faults
@@ -39,3 +40,23 @@ def load_designs(paths: Sequence[str]) -> list[Design]:
     if faults:
         raise all_faults(faults)
     return designs
+
+
+@contextmanager
+def naming(path: str) -> Iterator[None]:
+    """Tell the design file in an error of the work done within, which knows only the stack.
+
+    Parameters
+    ----------
+    path : str
+        The design file.
+
+    Raises
+    ------
+    FilmstackError
+        The error of the work, of the same kind, with the file before its place.
+    """
+    try:
+        yield
+    except FilmstackError as error:
+        raise type(error)(f"{path}: {error.where}", error.problem, error.advice) from error

@@ -5,7 +5,7 @@ from __future__ import annotations
 import argparse
 from typing import TYPE_CHECKING, Any
 
-from filmstack.cli.designs import load_designs
+from filmstack.cli.designs import load_designs, naming
 from filmstack.cli.options import add_options
 from filmstack.cli.parser import Options
 from filmstack.cli.spectrum import DEFAULTS_OF_THE_DESIGN, default_wavelengths, with_back_face
@@ -44,7 +44,8 @@ def run(options: Options) -> int:
     design = load_designs(options.designs)[0]
     stack = with_back_face(design.stack, "ideal", options.designs[0])
     wavelength, remarks = default_wavelengths(design, stack, options)
-    found = ellipsometry(stack, wavelength, options.angle or [USUAL_ANGLE])
+    with naming(options.designs[0]):
+        found = ellipsometry(stack, wavelength, options.angle or [USUAL_ANGLE])
     headings, rows = _table(found)
     record = {
         "design": design.name,

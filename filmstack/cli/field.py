@@ -5,7 +5,7 @@ from __future__ import annotations
 import argparse
 from typing import TYPE_CHECKING, Any
 
-from filmstack.cli.designs import load_designs
+from filmstack.cli.designs import load_designs, naming
 from filmstack.cli.options import add_options
 from filmstack.cli.parser import Options, number_from
 from filmstack.cli.spectrum import DEFAULTS_OF_THE_DESIGN, with_back_face
@@ -54,8 +54,9 @@ def run(options: Options) -> int:
     stack = with_back_face(design.stack, "ideal", options.designs[0])
     wavelength = options.wavelength or [design.reference_wavelength_nm]
     angle = options.angle or design.incident_angle_deg
-    fields = [field(stack, wavelength, angle, polarization=p) for p in ("s", "p")]
-    absorbed = spectrum(stack, wavelength, angle)
+    with naming(options.designs[0]):
+        fields = [field(stack, wavelength, angle, polarization=p) for p in ("s", "p")]
+        absorbed = spectrum(stack, wavelength, angle)
     record = _record(design, fields, (absorbed.A_layers_s, absorbed.A_layers_p), options.irradiance)
     if options.plot:
         _draw(design, stack, fields, options)

@@ -6,7 +6,7 @@ import argparse
 import math
 from typing import TYPE_CHECKING, Any
 
-from filmstack.cli.designs import load_designs
+from filmstack.cli.designs import load_designs, naming
 from filmstack.cli.options import add_options
 from filmstack.cli.parser import Options
 from filmstack.cli.spectrum import default_wavelengths, with_back_face
@@ -52,7 +52,8 @@ def run(options: Options) -> int:
     front = with_back_face(design.stack, "ideal", options.designs[0])
     stack = front if options.side == "front" else front.reversed()
     band, remarks = _band(design, stack, options)
-    results = _results(design, stack, band, options)
+    with naming(options.designs[0]):
+        results = _results(design, stack, band, options)
     if options.output and options.output.suffix.lower() == ".csv":
         write_csv(options.output, *_table(results))
     elif options.output:

@@ -5,7 +5,7 @@ from __future__ import annotations
 import argparse
 from typing import TYPE_CHECKING, Any
 
-from filmstack.cli.designs import load_designs
+from filmstack.cli.designs import load_designs, naming
 from filmstack.cli.options import add_options
 from filmstack.cli.parser import Options, one_of
 from filmstack.cli.spectrum import DEFAULTS_OF_THE_DESIGN, default_wavelengths, with_back_face
@@ -54,7 +54,8 @@ def run(options: Options) -> int:
     design = load_designs(options.designs)[0]
     stack = with_back_face(design.stack, "ideal", options.designs[0])
     wavelength, remarks = default_wavelengths(design, stack, options)
-    result = phase(stack, wavelength, options.angle or design.incident_angle_deg, plane=options.plane)
+    with naming(options.designs[0]):
+        result = phase(stack, wavelength, options.angle or design.incident_angle_deg, plane=options.plane)
     if options.plot:
         _draw(design, stack, result, options)
     head = [f"{design.name} ({options.designs[0]})", _conditions(result, options.of), *remarks]

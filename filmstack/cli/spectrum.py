@@ -12,7 +12,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from filmstack.cli.designs import load_designs
+from filmstack.cli.designs import load_designs, naming
 from filmstack.cli.options import OPTIONS, add_options
 from filmstack.cli.parser import Options, one_of
 from filmstack.errors import FilmstackError
@@ -135,10 +135,8 @@ def _part(design: Design, path: str, name: str, options: Options) -> Part:
     wavelength, remarks = default_wavelengths(design, stack, options)
     angle = options.angle or {"angle": _steps(0, 90), "map": _steps(0, 80)}.get(options.view)
     lit = stack if options.side == "front" else stack.reversed()
-    try:
+    with naming(path):
         result = spectrum(lit, wavelength, angle or design.incident_angle_deg)
-    except FilmstackError as error:  # which of the designs it was
-        raise type(error)(f"{path}: {error.where}", error.problem, error.advice) from error
     return Part(name, path, lit, result, remarks)
 
 

@@ -1,9 +1,12 @@
 """Wrong words on the command line: the whole message, exit status 2, nothing on standard output."""
 
+from pathlib import Path
+
 import pytest
 
 from filmstack.cli.main import COMMANDS, main
 
+DESIGNS = Path(__file__).parents[2] / "designs"
 FORMS = "expected START:STOP:STEP, a list such as 450,550,650 or a file"
 ANGLES = "expected angles in degrees such as 45, 0,30,45 or 0:60:15"
 HELP = "See filmstack spectrum --help"
@@ -103,3 +106,15 @@ def test_a_wrong_file_of_wavelengths_is_told_by_line(content, message, capsys, m
     (tmp_path / "w.csv").write_bytes(content)
     assert main(["spectrum", "a.toml", "--wavelength", "w.csv"]) == 2
     assert capsys.readouterr().err == f"filmstack: {message}\n"
+
+
+@pytest.mark.parametrize("command", ["spectrum", "peaks", "phase", "field", "ellipsometry", "admittance"])
+def test_a_wavelength_outside_a_source_is_told_with_the_file(command, capsys):
+    band = "150:160:10" if command == "peaks" else "150"
+    path = str(DESIGNS / "window-antireflection.toml")
+    assert main([command, path, "--wavelength", band]) == 2
+    printed = capsys.readouterr()
+    assert printed.err.startswith(f"filmstack: {path}: SiO2, ")
+    assert "expected a wavelength from" in printed.err
+    assert "got 150 nm" in printed.err
+    assert printed.out == ""

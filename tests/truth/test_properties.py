@@ -4,6 +4,7 @@ import hashlib
 import os
 import subprocess
 import sys
+from concurrent.futures import ThreadPoolExecutor
 
 import numpy as np
 import pytest
@@ -123,20 +124,50 @@ def test_any_grouping_gives_the_same_bytes(route):
                 assert getattr(part, name).tobytes() == wanted.tobytes()
 
 
-def test_number_of_threads_and_route_change_no_byte(monkeypatch):
-    d = _thicknesses(200)
+@pytest.fixture
+def pools(monkeypatch):
+    """Return the list of the sizes of the thread pools started so far."""
+    started = []
+
+    class Counted(ThreadPoolExecutor):
+        def __init__(self, threads):
+            started.append(threads)
+            super().__init__(threads)
+
+    monkeypatch.setattr("filmstack.work.pool.ThreadPoolExecutor", Counted)
+    return started
+
+
+def test_number_of_threads_and_route_change_no_byte(monkeypatch, pools):
+    d = _thicknesses(600)
     found = []
     for threads, route in (("1", "compiled"), ("2", "compiled"), ("5", "compiled"), ("1", "small")):
         monkeypatch.setenv("FILMSTACK_THREADS", threads)
         with forced(route):
             found.append(_bytes(fs.batch_spectrum(NOMINAL, AXIS[::10], ANGLES, thickness_nm=d)))
     assert all(one == found[0] for one in found)
+    assert pools == [2, 5]  # the work was large enough to be shared
     monkeypatch.setenv("FILMSTACK_THREADS", "many")
     with (
         pytest.raises(fs.ArgumentError, match="FILMSTACK_THREADS: expected a whole number >= 1, got 'many'"),
         forced("compiled"),
     ):
         fs.batch_spectrum(NOMINAL, AXIS, ANGLES, thickness_nm=d)
+
+
+@pytest.mark.parametrize("plate", [False, True])
+def test_number_of_threads_changes_no_byte_of_gradients_and_plates(monkeypatch, pools, plate):
+    films = [*NOMINAL.films, *NOMINAL.films]
+    stack = fs.Stack(C(1.0), [*films, fs.Plate(C(1.52, 1e-7), 1.0), *films[:3]] if plate else films, C(1.0))
+    axis, angles, digests = np.linspace(400.0, 700.0, 2200), [0.0, 20.0, 55.0, 80.0, 90.0], []
+    for threads in ("1", "2", "7"):
+        monkeypatch.setenv("FILMSTACK_THREADS", threads)
+        with forced("compiled"):
+            s, by_d = fs.spectrum(stack, axis, angles), fs.thickness_gradient(stack, axis, angles)
+            found = [s.R_p, s.T_s, s.A_layers_p, s.log10_T_p, by_d.dR_s, by_d.dT_p]
+        digests.append(hashlib.sha256(b"".join(x.tobytes() for x in found)).hexdigest())
+    assert len(set(digests)) == 1
+    assert set(pools) >= {2, 7}
 
 
 def test_samples_of_index_and_angle_equal_single_spectra():
